@@ -119,8 +119,8 @@ impl BearingOrders {
 
     /// Departure of stated orders from the sum rule outer + inner = number of elements.
     ///
-    /// Zero for orders from a geometry. Orders typed from a catalogue with more than about 0.02 here,
-    /// or none of whose sums is whole, carry a misprint.
+    /// Zero for orders from a geometry. Orders copied from a catalogue with more than about 0.02 here
+    /// carry a misprint.
     pub fn sum_rule_error(&self) -> f64 {
         let sum = self.outer + self.inner;
         (sum - sum.round()).abs()

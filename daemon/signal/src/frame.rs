@@ -5,7 +5,7 @@
 //! [`Scratch`]; the Hann window is applied to it in frequency,
 //! Y\[k\] = X\[k\]/2 − (X\[k−1\] + X\[k+1\])/4, which equals multiplying by the periodic Hann.
 //! For the density X\[0\] is taken as zero, so the frame's mean is removed before the window.
-//! Known error: `f32` arithmetic, below 0.0004 % of a line. Leaves out: overlap and block borders,
+//! Known error: `f32` arithmetic, 1e-6 of a line on a bin. Leaves out: overlap and block borders,
 //! which belong to whoever cuts the frames.
 //! Checked by `tests/accuracy/spectrum.rs`.
 

@@ -107,10 +107,11 @@ impl Window {
 
     /// Height of a unit line seen `bins` off its centre, relative to the centre.
     ///
-    /// The limit of long frames: Σ ± a\[m\] (sinc(x − m) + sinc(x + m))/2 over a\[0\].
+    /// The limit of long frames, Σ a\[m\] (sinc(x − m) + sinc(x + m))/2 over a\[0\]: seen from the
+    /// frame's middle all terms have one sign.
     pub fn response(&self, bins: f64) -> f64 {
-        let sum: f64 = self
-            .signed()
+        let terms = self.coefficients.iter().enumerate();
+        let sum: f64 = terms
             .map(|(m, a)| {
                 let m = m as f64;
                 0.5 * a * (sinc(bins - m) + sinc(bins + m))

@@ -5,8 +5,8 @@
 //! Height in m/s²: √(amplitude of the squared envelope)/2. For a train of bursts A e^(−t/τ) at rate
 //! f the squared envelope's h-th line is E = 2 f A² / |2/τ + j2πhf|, and the train's rms A √(fτ)/2,
 //! so a train of short bursts reads its own rms in the band. Long bursts and high harmonics read low,
-//! by the factor (1 + (πhfτ)²)^(−1/4): 2.3 % at fτ = 0.1, 26 % at fτ = 0.5.
-//! A sine of 2 % amplitude modulation is no burst and reads by the same formula, not as an rms.
+//! by the factor (1 + (πhfτ)²)^(−1/4): 2.3 % at fτ = 0.1, 8 % at 0.2, 26.7 % at 0.5.
+//! An amplitude-modulated tone is no train of bursts: its line reads √(2m)·A/2, not an rms.
 //! Checked by `tests/accuracy/envelope.rs`.
 
 use alloc::vec::Vec;
