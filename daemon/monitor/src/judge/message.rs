@@ -1,0 +1,346 @@
+//! Events, alarms and evidence in the words of the contract.
+
+use alloc::{
+    format,
+    string::{String, ToString},
+    vec::Vec,
+};
+
+use humward_wire::{
+    id::Id,
+    out::{
+        ADVISORY, Alarm, Event, Evidence, Finding, Header, Instant, Limit, MAX_EVENT, MAX_EVIDENCE, Measured, Quality,
+        RunState, Running, Severity, Standing, State, Transition,
+    },
+};
+
+use super::{
+    AssetJudge, Context, Operating,
+    account::{self, Account},
+    sensor::SensorChange,
+    sentence,
+    watch::Change,
+    words,
+};
+use crate::{
+    analysis::{Taken, Traces},
+    input::{GapCause, Identity},
+
+    reading::{Reading, ShaftSpeed},
+};
+
+/// What happens to an asset as a whole.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) enum AssetChange {
+    /// Judging paused.
+    Suspended,
+    /// Judging goes on.
+    Resumed,
+}
+
+/// The loss a block that was not taken whole counts under.
+pub(super) const fn loss_of(taken: Taken) -> &'static str {
+    match taken {
+        Taken::Whole => "none",
+        Taken::Late => "late",
+        Taken::Uncalibrated => "uncalibrated",
+        Taken::NoChannel => "no_channel",
+        Taken::RateUnusable => "rate_unusable",
+    }
+}
+
+/// The loss a gap on our side counts under.
+pub(super) const fn gap_of(cause: GapCause) -> &'static str {
+    match cause {
+        GapCause::Shed => "shed",
+        GapCause::LinkLost => "link_lost",
+        GapCause::Restart => "restart",
+    }
+}
+
+/// Name of a point's instrument watch.
+pub(super) fn sensor_watch(point: &Id) -> String {
+    let mut name = format!("sensor.{point}");
+    name.truncate(64);
+    name
+}
+
+/// Id of the asset's event number `n`.
+pub(super) fn event_id(identity: &Identity, n: u64) -> Id {
+    let text = format!("{}-{n}", identity.epoch);
+    match Id::new(&text) {
+        Ok(id) => id,
+        // Digits and a hyphen, at most 41 characters: always an id; the gateway's own stands in for the impossible.
+        Err(_) => identity.gateway.clone(),
+    }
+}
+
+/// The shaft speed in a message, with its quality.
+pub(super) const fn told_speed(speed: ShaftSpeed) -> (Option<f64>, Quality) {
+    match speed {
+        ShaftSpeed::Reported(rpm) => (Some(rpm), Quality::Good),
+        ShaftSpeed::Nominal(rpm) => (Some(rpm), Quality::NotVerified),
+    }
+}
+
+/// Whether and how fast the machine turns.
+pub(super) fn running(judge: &AssetJudge, speed: Option<ShaftSpeed>) -> Running {
+    let state = match judge.running.state() {
+        Operating::Unknown => RunState::Unknown,
+        Operating::Stopped => RunState::Stopped,
+        Operating::Running => RunState::Running,
+    };
+    let (rpm, rpm_quality) = speed.map_or((None, Quality::Missing), told_speed);
+    Running { state, state_code: state.code(), operating: None, rpm, rpm_quality }
+}
+
+fn header(context: Context<'_>, at: Instant) -> Header {
+    let Context { identity, plan, .. } = context;
+    Header::new::<Event>(identity.gateway.clone(), identity.epoch, identity.site.clone(), Some(plan.id().clone()), at)
+}
+
+fn event(context: Context<'_>, n: u64, id: Id, at: Instant, transition: Transition, finding: Finding) -> Event {
+    let event = Event {
+        header: header(context, at),
+        n,
+        id,
+        transition,
+        transition_code: transition.code(),
+        from_n: None,
+        to_n: None,
+        finding,
+    };
+    event.fit(MAX_EVENT).0
+}
+
+/// A finding with nothing in it but its standing and the machine's state.
+fn bare(judge: &AssetJudge, standing: Standing, speed: Option<ShaftSpeed>, text: String) -> Finding {
+    Finding {
+        text,
+        occurrence: None,
+        lead: None,
+        point: None,
+        watch: None,
+        standing,
+        latched: false,
+        value: None,
+        limit: None,
+        normal: None,
+        since: None,
+        readings: 0,
+        running: running(judge, speed),
+        lines: Vec::new(),
+        also: Vec::new(),
+        against: Vec::new(),
+        checks: Vec::new(),
+        truncated: false,
+        advisory: ADVISORY.into(),
+    }
+}
+
+/// The event of a machine watch that changed on `reading`.
+pub(super) fn watch_event(
+    judge: &AssetJudge,
+    context: Context<'_>,
+    index: usize,
+    reading: &Reading,
+    change: Change,
+    id: Id,
+) -> Event {
+    let plan = &context.plan.spec().watches[index];
+    let spec = plan.spec();
+    let state = &judge.watches[index];
+    let occurrence = state.occurrence();
+    let (transition, kind) = match change {
+        Change::Raised(_) => (Transition::Raised, State::Unack),
+        Change::Worsened => (Transition::Worsened, State::Unack),
+        Change::Eased => (Transition::Eased, State::Unack),
+        Change::Cleared => (Transition::Cleared, State::Norm),
+    };
+    let severity = state.severity();
+    let limit = match (change, severity) {
+        (Change::Eased, _) | (_, Severity::Danger) => spec.limits.danger().or(spec.limits.alert()),
+        _ => spec.limits.alert().or(spec.limits.danger()),
+    };
+    let account = Account { context, plan, reading, limit: limit.map(|limit| limit.value()), change, severity };
+    let since = occurrence.map(|open| Instant(open.since.ns()));
+    let finding = Finding {
+        text: account::text(&account, since),
+        occurrence: occurrence.and_then(|open| open.id.clone()),
+        point: Some(context.plan.spec().points[spec.point].id().clone()),
+        watch: Some(plan.full_name().into()),
+        value: Some(account::value(&account)),
+        limit: limit.map(|limit| Limit { value: limit.value(), unit: spec.quantity.unit().into() }),
+        since,
+        readings: state.readings(change),
+        lines: account::lines(&account),
+        also: account::also(&account),
+        against: account::against(&account),
+        checks: match severity {
+            Severity::None => Vec::new(),
+            Severity::Alert | Severity::Danger => {
+                words::checks(spec.measure, severity).iter().map(ToString::to_string).collect()
+            }
+        },
+        ..bare(judge, Standing::new(kind, severity), Some(reading.speed), String::new())
+    };
+    event(context, judge.n, id, Instant(reading.end.ns()), transition, finding)
+}
+
+/// The retained state that goes with an event.
+pub(super) fn alarm_of(event: &Event) -> Alarm {
+    let mut header = event.header.clone();
+    header.schema = <Alarm as humward_wire::out::Message>::SCHEMA.into();
+    Alarm { header, n: event.n, event: event.id.clone(), finding: event.finding.clone() }.fit(MAX_EVENT).0
+}
+
+/// The event of a point's instrument watch.
+pub(super) fn sensor_event(
+    judge: &AssetJudge,
+    context: Context<'_>,
+    point: usize,
+    change: SensorChange,
+    id: Id,
+) -> Event {
+    let plan = context.plan.spec().points[point].spec();
+    let open = judge.sensors[point].open();
+    let since = open.map(|open| Instant(open.since.ns()));
+    let place = format!("{} {}, {}", context.plan.id(), context.plan.spec().name, plan.name);
+    let (transition, standing, text, checks) = match change {
+        SensorChange::Raised(cause) => {
+            let began = since.map_or_else(String::new, |since| format!(" since {}", sentence::clock(since)));
+            let what = format!("ALERT {place}: its sensor {}{began}.", words::cause(cause));
+            let checks = words::sensor_checks(cause);
+            let unwatched = "The machine is not judged at this point: silence is not health.".to_string();
+            let next = format!("Next: {}.", checks.join(", "));
+            let standing = Standing::new(State::Unack, Severity::Alert);
+            (Transition::Raised, standing, sentence::join(&[what, unwatched, next]), checks)
+        }
+        SensorChange::Cleared => {
+            let what = format!("CLEARED {place}: its sensor is good again.");
+            let standing = Standing::new(State::Norm, Severity::None);
+            (Transition::Cleared, standing, sentence::join(&[what]), [].as_slice())
+        }
+    };
+    let finding = Finding {
+        occurrence: open.and_then(|open| open.id.clone()),
+        point: Some(plan.id.clone()),
+        watch: Some(sensor_watch(&plan.id)),
+        since,
+        checks: checks.iter().map(ToString::to_string).collect(),
+        ..bare(judge, standing, None, text)
+    };
+    event(context, judge.n, id, Instant(context.arrival.ns()), transition, finding)
+}
+
+/// The event of an asset whose judging paused or goes on.
+pub(super) fn asset_event(judge: &AssetJudge, context: Context<'_>, change: AssetChange, id: Id) -> Event {
+    let open = judge.watches.iter().filter(|watch| watch.occurrence().is_some()).count();
+    let worst = judge.watches.iter().map(super::watch::WatchState::severity).max().unwrap_or(Severity::None);
+    let place = format!("{} {}", context.plan.id(), context.plan.spec().name);
+    let (transition, state, text) = match change {
+        AssetChange::Suspended => (
+            Transition::Suspended,
+            State::Dsupr,
+            format!("SUSPENDED {place}: it does not run; {open} open alarm(s) held, not ended."),
+        ),
+        AssetChange::Resumed => (
+            Transition::Resumed,
+            State::Unack,
+            format!("RESUMED {place}: it runs again; {open} held alarm(s) go on."),
+        ),
+    };
+    let at = judge.running.since().map_or(context.arrival.ns(), |since| since.ns());
+    let finding = bare(judge, Standing::new(state, worst), None, sentence::join(&[text]));
+    event(context, judge.n, id, Instant(at), transition, finding)
+}
+
+/// The retained state of an open occurrence whose judging paused or goes on; `None` where nothing is open.
+pub(super) fn held_alarm(
+    judge: &AssetJudge,
+    context: Context<'_>,
+    index: usize,
+    change: AssetChange,
+    id: Id,
+) -> Option<Alarm> {
+    let state = &judge.watches[index];
+    let occurrence = state.occurrence()?;
+    let plan = &context.plan.spec().watches[index];
+    let reading = judge.last_running[plan.spec().point].as_ref();
+    let (kind, word) = match change {
+        AssetChange::Suspended => (State::Dsupr, "held while the machine does not run"),
+        AssetChange::Resumed => (State::Unack, "open, the machine runs again"),
+    };
+    let since = Instant(occurrence.since.ns());
+    let place = format!("{} {}", context.plan.id(), context.plan.spec().name);
+    let severity = severity_word(state.severity());
+    let text = format!(
+        "{severity} {place}, {}: {word}, since {}.",
+        context.plan.spec().points[plan.spec().point].spec().name,
+        sentence::clock(since)
+    );
+    let value = reading.and_then(|reading| reading.value(plan.spec().measure)).map(|value| Measured {
+        measure: words::key(plan.spec().measure).into(),
+        value: Some(value),
+        unit: plan.spec().quantity.unit().into(),
+        quality: Quality::Stale,
+    });
+    let finding = Finding {
+        occurrence: occurrence.id.clone(),
+        point: Some(context.plan.spec().points[plan.spec().point].id().clone()),
+        watch: Some(plan.full_name().into()),
+        value,
+        since: Some(since),
+        ..bare(judge, Standing::new(kind, state.severity()), None, sentence::join(&[text]))
+    };
+    let mut header = header(context, Instant(context.arrival.ns()));
+    header.schema = <Alarm as humward_wire::out::Message>::SCHEMA.into();
+    Some(Alarm { header, n: judge.n, event: id, finding }.fit(MAX_EVENT).0)
+}
+
+/// The event of an occurrence whose watch or asset is no longer in the plan.
+pub(super) fn withdrawn_event(
+    judge: &AssetJudge,
+    context: Context<'_>,
+    watch: &str,
+    occurrence: Option<Id>,
+    id: Id,
+) -> Event {
+    let place = format!("{} {}", context.plan.id(), context.plan.spec().name);
+    let text = sentence::join(&[format!("WITHDRAWN {place}: {watch} is no longer in the configuration.")]);
+    let finding = Finding {
+        occurrence,
+        watch: Some(watch.into()),
+        ..bare(judge, Standing::new(State::Norm, Severity::None), None, text)
+    };
+    event(context, judge.n, id, Instant(context.arrival.ns()), Transition::Withdrawn, finding)
+}
+
+/// Spectra and waveform that go with an event.
+pub(super) fn evidence(context: Context<'_>, index: usize, reading: &Reading, event: Id, traces: Traces) -> Evidence {
+    let plan = &context.plan.spec().watches[index];
+    let mut header = header(context, Instant(reading.end.ns()));
+    header.schema = <Evidence as humward_wire::out::Message>::SCHEMA.into();
+    Evidence {
+        header,
+        event,
+        point: context.plan.spec().points[plan.spec().point].id().clone(),
+        watch: Some(plan.full_name().into()),
+        rpm: told_speed(reading.speed).0,
+        spectrum: Some(traces.spectrum),
+        envelope: traces.envelope,
+        waveform: Some(traces.waveform),
+        truncated: false,
+    }
+    .fit(MAX_EVIDENCE)
+    .0
+}
+
+/// The word a sentence begins with.
+pub(super) const fn severity_word(severity: Severity) -> &'static str {
+    match severity {
+        Severity::None => "CLEARED",
+        Severity::Alert => "ALERT",
+        Severity::Danger => "DANGER",
+    }
+}

@@ -1,0 +1,171 @@
+//! A pump set and the group whose foundation it shares.
+
+use alloc::{format, string::String, vec::Vec};
+
+use humward_wire::id::Id;
+
+use super::{PointPlan, WatchPlan, ZoneLimits, fault::{Code, Part, PlanFault}};
+use crate::time::Span;
+
+/// How it is known that a machine runs.
+///
+/// A fresh speed decides first: above `from_rpm` it runs. Without one the level decides: the asset's
+/// strongest velocity at or above `from_mm_s` means running, below 0.7 of that stopped, between them as it was.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct RunningRule {
+    /// At this speed and above it runs, r/min.
+    pub from_rpm: f64,
+    /// At this velocity and above it runs when no fresh speed is known, mm/s rms.
+    pub from_mm_s: f64,
+    /// How long a reported speed stays fresh.
+    pub speed_valid: Span,
+}
+
+/// The speeds a machine runs at, r/min.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct SpeedRange {
+    /// The lowest.
+    pub lowest: f64,
+    /// The one that stands for it when none is reported.
+    pub nominal: f64,
+    /// The highest.
+    pub highest: f64,
+}
+
+/// An asset as asked for.
+#[derive(Debug, Clone, PartialEq)]
+pub struct AssetSpec {
+    /// Its id: the tag on its plate.
+    pub id: Id,
+    /// What people call it and where it stands.
+    pub name: String,
+    /// Its speeds, r/min.
+    pub speed: SpeedRange,
+    /// How it is known that it runs.
+    pub running: RunningRule,
+    /// The zones velocity is told in.
+    pub zones: Option<ZoneLimits>,
+    /// Length of a reading; readings end on its absolute multiples.
+    pub reading_every: Span,
+    /// How often the status is told when nothing changes.
+    pub status_every: Span,
+    /// How long a point may send nothing, or nothing usable, before its sensor alarm.
+    pub sensor_after: Span,
+    /// Its points, in the order of their index.
+    pub points: Vec<PointPlan>,
+    /// Its watches.
+    pub watches: Vec<WatchPlan>,
+}
+
+/// A checked asset.
+#[derive(Debug, Clone, PartialEq)]
+pub struct AssetPlan {
+    spec: AssetSpec,
+}
+
+impl AssetPlan {
+    /// Checks what spans points and watches: speeds that rise, spans in range, ids and names used once,
+    /// and that every answer asked for can be had with the rates, frames, bands and sensors given.
+    ///
+    /// # Errors
+    /// Every fault found, each with its key.
+    pub fn new(spec: AssetSpec) -> Result<Self, Vec<PlanFault>> {
+        let mut faults = Vec::new();
+        let mut fault = |code, key, read: String, allowed: String| {
+            faults.push(PlanFault { code, part: Part::Own, key, read, allowed });
+        };
+        let SpeedRange { lowest, nominal, highest } = spec.speed;
+        let rising = lowest > 0.0 && nominal >= lowest && highest >= nominal && highest <= 100_000.0;
+        if !rising {
+            fault(
+                Code::OutOfRange,
+                "speed",
+                format!("{lowest}, {nominal}, {highest}"),
+                "lowest, nominal and highest, r/min, rising, above 0 to 100000".into(),
+            );
+        }
+        if !(spec.running.from_rpm >= 0.0 && spec.running.from_rpm <= lowest) {
+            fault(
+                Code::OutOfRange,
+                "running_from_rpm",
+                format!("{}", spec.running.from_rpm),
+                format!("0 to the lowest speed, {lowest} r/min"),
+            );
+        }
+        if !(spec.running.from_mm_s.is_finite() && spec.running.from_mm_s > 0.0) {
+            fault(Code::OutOfRange, "running_from_mm_s", format!("{}", spec.running.from_mm_s), "above 0 mm/s rms".into());
+        }
+        let spans = [
+            ("reading_every", spec.reading_every, 1, 3600),
+            ("status_every", spec.status_every, 1, 86_400),
+            ("sensor_after", spec.sensor_after, 1, 30 * 86_400),
+            ("speed_valid", spec.running.speed_valid, 1, 30 * 86_400),
+        ];
+        for (key, span, least, most) in spans {
+            if !(Span::from_secs(least)..=Span::from_secs(most)).contains(&span) {
+                fault(Code::OutOfRange, key, format!("{} s", span.secs()), format!("{least} s to {most} s"));
+            }
+        }
+        for (i, point) in spec.points.iter().enumerate() {
+            if spec.points[..i].iter().any(|earlier| earlier.id() == point.id()) {
+                faults.push(twice(Part::Point(i), "id", point.id().as_str(), "each point id once in its asset"));
+            }
+        }
+        for (i, watch) in spec.watches.iter().enumerate() {
+            if spec.watches[..i].iter().any(|earlier| earlier.full_name() == watch.full_name()) {
+                faults.push(twice(Part::Watch(i), "name", watch.full_name(), "each watch name once at its point"));
+            }
+        }
+        if rising {
+            faults.extend(super::feasible::faults(&spec));
+        }
+        if faults.is_empty() { Ok(Self { spec }) } else { Err(faults) }
+    }
+
+    /// The asset as it was asked for, now known to be sound.
+    pub const fn spec(&self) -> &AssetSpec {
+        &self.spec
+    }
+
+    /// Its id.
+    pub const fn id(&self) -> &Id {
+        &self.spec.id
+    }
+}
+
+/// Assets that share a foundation: the unit of thread, order and replay.
+#[derive(Debug, Clone, PartialEq)]
+pub struct GroupPlan {
+    id: Id,
+    assets: Vec<AssetPlan>,
+}
+
+impl GroupPlan {
+    /// A group of checked assets.
+    ///
+    /// # Errors
+    /// An asset id used twice.
+    pub fn new(id: Id, assets: Vec<AssetPlan>) -> Result<Self, Vec<PlanFault>> {
+        let mut faults = Vec::new();
+        for (i, asset) in assets.iter().enumerate() {
+            if assets[..i].iter().any(|earlier| earlier.id() == asset.id()) {
+                faults.push(twice(Part::Own, "id", asset.id().as_str(), "each asset id once in the site"));
+            }
+        }
+        if faults.is_empty() { Ok(Self { id, assets }) } else { Err(faults) }
+    }
+
+    /// Its id.
+    pub const fn id(&self) -> &Id {
+        &self.id
+    }
+
+    /// Its assets, in the order of their index.
+    pub fn assets(&self) -> &[AssetPlan] {
+        &self.assets
+    }
+}
+
+fn twice(part: Part, key: &'static str, read: &str, allowed: &str) -> PlanFault {
+    PlanFault { code: Code::Twice, part, key, read: read.into(), allowed: allowed.into() }
+}
