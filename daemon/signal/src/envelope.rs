@@ -23,7 +23,7 @@ use core::fmt;
 use realfft::num_complex::Complex;
 use realfft::{ComplexToReal, RealFftPlanner, RealToComplex};
 
-use crate::frame::{FrameFault, Scratch, check, grow, smooth};
+use crate::frame::{FrameFault, Scratch, check, grow};
 use crate::psd::hann_power;
 pub use lines::{EnvelopeLine, LineFamily, LineSearch};
 
@@ -144,9 +144,7 @@ impl EnvelopePlan {
         let weights = (0..bins)
             .map(|i| (2.0 / n as f64 * edge(i, bins)) as f32)
             .collect();
-        let short = (bins + side..)
-            .find(|m| m % 2 == 0 && smooth(*m))
-            .unwrap_or(n);
+        let short = quick_length(bins + side);
         let mut planner = RealFftPlanner::<f32>::new();
         Ok(EnvelopePlan {
             n,
@@ -289,6 +287,20 @@ impl EnvelopePlan {
 enum Part {
     Real,
     Imaginary,
+}
+
+/// The shortest length from `least` on that transforms quickly: a power of two times 1, 3, 5, 9 or 15.
+///
+/// 16 at least; so it is even, and no more than a quarter above `least`.
+fn quick_length(least: usize) -> usize {
+    let lengths = [1, 3, 5, 9, 15].into_iter().map(|odd| {
+        let mut length = 16 * odd;
+        while length < least {
+            length *= 2;
+        }
+        length
+    });
+    lengths.min().unwrap_or(least)
 }
 
 /// Raised cosine over the outermost bins; symmetric, so the envelope is not skewed.

@@ -2,8 +2,8 @@
 //!
 //! In: samples, m/s², all finite, in order and without overlap. Out: rms about the mean, true peak,
 //! crest, kurtosis (Pearson: Gaussian 3, sine 1.5), runs of equal values and of values at a rail.
-//! Each chunk of 256 samples is summed in `f32` about its own first sample's neighbourhood, its mean,
-//! and joined in `f64`: gravity, drift or a wild first sample cost no digits. The mean of the whole
+//! Each chunk of 256 samples is summed in `f32` about a pivot of its own, near its mean, and joined
+//! in `f64`: gravity, drift or a wild first sample cost no digits. The mean of the whole
 //! reading is what is removed, not a running one. Formula of the join: Pébay (2008), Sandia report
 //! SAND2008-6212, from memory; checked against two-pass `f64` moments by `tests/accuracy/moments.rs`.
 //! Known error: 2e-6 of kurtosis and rms.
@@ -77,13 +77,12 @@ impl Statistics {
     /// Reads samples; blocks of any length, also empty.
     pub fn push(&mut self, samples: &[f32]) {
         for chunk in samples.chunks(CHUNK) {
-            let (min, max, sum) = extremes(chunk);
+            let (min, max, pivot) = extremes(chunk);
             self.min = self.min.min(min);
             self.max = self.max.max(max);
-            self.moments
-                .join(&Moments::of(chunk, sum / chunk.len() as f32));
-            self.runs.push(chunk);
+            self.moments.join(&Moments::of(chunk, pivot));
         }
+        self.runs.push(samples);
     }
 
     /// Forgets everything but the rails.
@@ -125,29 +124,66 @@ impl Statistics {
     }
 }
 
-/// Smallest, largest and sum of a chunk.
+/// Smallest, largest and a value near the mean of a chunk of one sample or more.
 fn extremes(chunk: &[f32]) -> (f32, f32, f32) {
+    let (lanes, rest) = chunk.as_chunks::<LANES>();
+    let mut all = lane_extremes(lanes);
+    let mut rows = lanes.len();
+    if let Some(&first) = rest.first() {
+        // Filled up with one of its own values, the last row changes no extreme.
+        let [low, high, sum] = lane_extremes(&[filled(rest, first)]);
+        for i in 0..LANES {
+            all[0][i] = all[0][i].min(low[i]);
+            all[1][i] = all[1][i].max(high[i]);
+            all[2][i] += sum[i];
+        }
+        rows += 1;
+    }
+    let [low, high, sum] = all;
+    (
+        low.into_iter().fold(f32::INFINITY, f32::min),
+        high.into_iter().fold(f32::NEG_INFINITY, f32::max),
+        sum.into_iter().sum::<f32>() / (rows * LANES) as f32,
+    )
+}
+
+fn filled(rest: &[f32], with: f32) -> [f32; LANES] {
+    let mut row = [with; LANES];
+    row[..rest.len()].copy_from_slice(rest);
+    row
+}
+
+/// Smallest, largest and sum of each lane. Apart, and not inlined, so that it stays a vector loop.
+#[inline(never)]
+fn lane_extremes(rows: &[[f32; LANES]]) -> [[f32; LANES]; 3] {
     let mut low = [f32::INFINITY; LANES];
     let mut high = [f32::NEG_INFINITY; LANES];
     let mut sum = [0f32; LANES];
-    let (lanes, rest) = chunk.as_chunks::<LANES>();
-    for x in lanes {
+    for x in rows {
         for i in 0..LANES {
             low[i] = if x[i] < low[i] { x[i] } else { low[i] };
             high[i] = if x[i] > high[i] { x[i] } else { high[i] };
             sum[i] += x[i];
         }
     }
-    for (i, &x) in rest.iter().enumerate() {
-        low[i] = low[i].min(x);
-        high[i] = high[i].max(x);
-        sum[i] += x;
+    [low, high, sum]
+}
+
+/// Σd, Σd², Σd³, Σd⁴ of each lane, d = x − pivot. Apart, and not inlined, for the same reason.
+#[inline(never)]
+fn lane_moments(rows: &[[f32; LANES]], pivot: f32) -> [[f32; LANES]; 4] {
+    let mut sums = [[0f32; LANES]; 4];
+    for x in rows {
+        for i in 0..LANES {
+            let d = x[i] - pivot;
+            let square = d * d;
+            sums[0][i] += d;
+            sums[1][i] += square;
+            sums[2][i] += square * d;
+            sums[3][i] += square * square;
+        }
     }
-    (
-        low.into_iter().fold(f32::INFINITY, f32::min),
-        high.into_iter().fold(f32::NEG_INFINITY, f32::max),
-        sum.into_iter().sum(),
-    )
+    sums
 }
 
 /// Count, mean and central moment sums Σ(x − mean)^p.
@@ -163,31 +199,17 @@ struct Moments {
 impl Moments {
     /// Moments of at most [`CHUNK`] samples, summed about `pivot`, which is near their mean.
     fn of(chunk: &[f32], pivot: f32) -> Self {
-        let mut s1 = [0f32; LANES];
-        let mut s2 = [0f32; LANES];
-        let mut s3 = [0f32; LANES];
-        let mut s4 = [0f32; LANES];
-        let (lanes, rest) = chunk.as_chunks::<LANES>();
-        for x in lanes {
-            for i in 0..LANES {
-                let d = x[i] - pivot;
-                let square = d * d;
-                s1[i] += d;
-                s2[i] += square;
-                s3[i] += square * d;
-                s4[i] += square * square;
-            }
-        }
-        for (i, &x) in rest.iter().enumerate() {
-            let d = x - pivot;
-            let square = d * d;
-            s1[i] += d;
-            s2[i] += square;
-            s3[i] += square * d;
-            s4[i] += square * square;
-        }
+        let (rows, rest) = chunk.as_chunks::<LANES>();
         let total = |lanes: [f32; LANES]| lanes.into_iter().map(f64::from).sum::<f64>();
-        let (s1, s2, s3, s4) = (total(s1), total(s2), total(s3), total(s4));
+        let [mut s1, mut s2, mut s3, mut s4] = lane_moments(rows, pivot).map(total);
+        if !rest.is_empty() {
+            // Filled up with the pivot, the last row adds nothing of its own.
+            let last = lane_moments(&[filled(rest, pivot)], pivot).map(total);
+            s1 += last[0];
+            s2 += last[1];
+            s3 += last[2];
+            s4 += last[3];
+        }
         let n = chunk.len() as f64;
         let m = s1 / n;
         Moments {

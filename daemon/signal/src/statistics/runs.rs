@@ -50,62 +50,97 @@ impl Runs {
         self.rail_longest
     }
 
+    /// Reads samples that follow those read before.
     pub(super) fn push(&mut self, samples: &[f32]) {
-        for span in samples.chunks(SPAN) {
-            self.equal(span);
-            if let Some(rails) = self.rails {
-                self.rail(span, rails);
-            }
+        self.equal(samples);
+        if let Some(rails) = self.rails {
+            self.rail(samples, rails);
         }
     }
 
-    fn equal(&mut self, span: &[f32]) {
-        let (Some(&first), Some(&end)) = (span.first(), span.last()) else {
+    fn equal(&mut self, samples: &[f32]) {
+        let (Some(&first), Some(&end)) = (samples.first(), samples.last()) else {
             return;
         };
-        let joins = self.last == Some(first);
-        let mut pairs = 0u32;
-        for (a, b) in span.iter().zip(&span[1..]) {
-            pairs += u32::from(a == b);
-        }
-        let carried = if joins { self.equal_open } else { 0 };
-        // `pairs` equal neighbours make no run longer than pairs + 1, plus what is carried in.
-        if carried + u64::from(pairs) + 1 > self.equal_longest {
-            let mut last = self.last;
-            for &x in span {
-                self.equal_open = if last == Some(x) {
-                    self.equal_open + 1
-                } else {
-                    1
-                };
-                self.equal_longest = self.equal_longest.max(self.equal_open);
-                last = Some(x);
-            }
-        } else {
-            let tail = span.iter().rev().take_while(|x| **x == end).count() as u64;
-            self.equal_open = if tail == span.len() as u64 {
-                carried + tail
+        self.step(self.last == Some(first));
+        let mut from = 1;
+        while let (Some(before), Some(span)) = (
+            samples[from - 1..].first_chunk::<SPAN>(),
+            samples[from..].first_chunk::<SPAN>(),
+        ) {
+            let pairs = pairs(before, span);
+            // A run within the span has at most pairs + 1 samples, one carried in grows by pairs.
+            if self.equal_open + u64::from(pairs) > self.equal_longest {
+                for (a, b) in before.iter().zip(span) {
+                    self.step(a == b);
+                }
+            } else if pairs == 0 {
+                self.equal_open = 1;
             } else {
-                tail
-            };
+                let tail = before
+                    .iter()
+                    .zip(span)
+                    .rev()
+                    .take_while(|(a, b)| a == b)
+                    .count();
+                self.equal_open = if tail == SPAN { self.equal_open } else { 1 } + tail as u64;
+            }
+            from += SPAN;
+        }
+        for (a, b) in samples[from - 1..].iter().zip(&samples[from..]) {
+            self.step(a == b);
         }
         self.last = Some(end);
     }
 
-    fn rail(&mut self, span: &[f32], rails: Rails) {
-        let at_rail = |x: f32| (x <= rails.low) | (x >= rails.high);
-        let mut hits = 0u32;
-        for &x in span {
-            hits += u32::from(at_rail(x));
+    /// Takes one sample that equals the one before, or does not.
+    fn step(&mut self, equal: bool) {
+        self.equal_open = if equal { self.equal_open + 1 } else { 1 };
+        self.equal_longest = self.equal_longest.max(self.equal_open);
+    }
+
+    fn rail(&mut self, samples: &[f32], rails: Rails) {
+        let (spans, rest) = samples.as_chunks::<SPAN>();
+        for span in spans {
+            if hits(span, rails) == 0 {
+                self.rail_open = 0;
+            } else {
+                self.walk_rail(span, rails);
+            }
         }
-        if hits == 0 {
-            self.rail_open = 0;
-            return;
-        }
-        self.rail_samples += u64::from(hits);
+        self.walk_rail(rest, rails);
+    }
+
+    fn walk_rail(&mut self, span: &[f32], rails: Rails) {
         for &x in span {
-            self.rail_open = if at_rail(x) { self.rail_open + 1 } else { 0 };
+            let hit = at_rail(x, rails);
+            self.rail_samples += u64::from(hit);
+            self.rail_open = if hit { self.rail_open + 1 } else { 0 };
             self.rail_longest = self.rail_longest.max(self.rail_open);
         }
     }
+}
+
+fn at_rail(x: f32, rails: Rails) -> bool {
+    (x <= rails.low) | (x >= rails.high)
+}
+
+/// Samples equal to the one before them. Apart, and not inlined, so that it stays a vector loop.
+#[inline(never)]
+fn pairs(before: &[f32; SPAN], span: &[f32; SPAN]) -> u32 {
+    let mut count = 0;
+    for i in 0..SPAN {
+        count += u32::from(before[i] == span[i]);
+    }
+    count
+}
+
+/// Samples at a rail. Apart, and not inlined, for the same reason.
+#[inline(never)]
+fn hits(span: &[f32; SPAN], rails: Rails) -> u32 {
+    let mut count = 0;
+    for x in span {
+        count += u32::from(at_rail(*x, rails));
+    }
+    count
 }
