@@ -4,7 +4,10 @@ use alloc::{format, string::String, vec::Vec};
 
 use humward_wire::id::Id;
 
-use super::{PointPlan, WatchPlan, ZoneLimits, fault::{Code, Part, PlanFault}};
+use super::{
+    PointPlan, WatchPlan, ZoneLimits,
+    fault::{Code, Part, PlanFault},
+};
 use crate::time::Span;
 
 /// How it is known that a machine runs.
@@ -72,10 +75,21 @@ impl AssetPlan {
     pub fn new(spec: AssetSpec) -> Result<Self, Vec<PlanFault>> {
         let mut faults = Vec::new();
         let mut fault = |code, key, read: String, allowed: String| {
-            faults.push(PlanFault { code, part: Part::Own, key, read, allowed });
+            faults.push(PlanFault {
+                code,
+                part: Part::Own,
+                key,
+                read,
+                allowed,
+            });
         };
-        let SpeedRange { lowest, nominal, highest } = spec.speed;
-        let rising = lowest > 0.0 && nominal >= lowest && highest >= nominal && highest <= 100_000.0;
+        let SpeedRange {
+            lowest,
+            nominal,
+            highest,
+        } = spec.speed;
+        let rising =
+            lowest > 0.0 && nominal >= lowest && highest >= nominal && highest <= 100_000.0;
         if !rising {
             fault(
                 Code::OutOfRange,
@@ -93,7 +107,12 @@ impl AssetPlan {
             );
         }
         if !(spec.running.from_mm_s.is_finite() && spec.running.from_mm_s > 0.0) {
-            fault(Code::OutOfRange, "running_from_mm_s", format!("{}", spec.running.from_mm_s), "above 0 mm/s rms".into());
+            fault(
+                Code::OutOfRange,
+                "running_from_mm_s",
+                format!("{}", spec.running.from_mm_s),
+                "above 0 mm/s rms".into(),
+            );
         }
         let spans = [
             ("reading_every", spec.reading_every, 1, 3600),
@@ -103,23 +122,48 @@ impl AssetPlan {
         ];
         for (key, span, least, most) in spans {
             if !(Span::from_secs(least)..=Span::from_secs(most)).contains(&span) {
-                fault(Code::OutOfRange, key, format!("{} s", span.secs()), format!("{least} s to {most} s"));
+                fault(
+                    Code::OutOfRange,
+                    key,
+                    format!("{} s", span.secs()),
+                    format!("{least} s to {most} s"),
+                );
             }
         }
         for (i, point) in spec.points.iter().enumerate() {
-            if spec.points[..i].iter().any(|earlier| earlier.id() == point.id()) {
-                faults.push(twice(Part::Point(i), "id", point.id().as_str(), "each point id once in its asset"));
+            if spec.points[..i]
+                .iter()
+                .any(|earlier| earlier.id() == point.id())
+            {
+                faults.push(twice(
+                    Part::Point(i),
+                    "id",
+                    point.id().as_str(),
+                    "each point id once in its asset",
+                ));
             }
         }
         for (i, watch) in spec.watches.iter().enumerate() {
-            if spec.watches[..i].iter().any(|earlier| earlier.full_name() == watch.full_name()) {
-                faults.push(twice(Part::Watch(i), "name", watch.full_name(), "each watch name once at its point"));
+            if spec.watches[..i]
+                .iter()
+                .any(|earlier| earlier.full_name() == watch.full_name())
+            {
+                faults.push(twice(
+                    Part::Watch(i),
+                    "name",
+                    watch.full_name(),
+                    "each watch name once at its point",
+                ));
             }
         }
         if rising {
             faults.extend(super::feasible::faults(&spec));
         }
-        if faults.is_empty() { Ok(Self { spec }) } else { Err(faults) }
+        if faults.is_empty() {
+            Ok(Self { spec })
+        } else {
+            Err(faults)
+        }
     }
 
     /// The asset as it was asked for, now known to be sound.
@@ -149,10 +193,19 @@ impl GroupPlan {
         let mut faults = Vec::new();
         for (i, asset) in assets.iter().enumerate() {
             if assets[..i].iter().any(|earlier| earlier.id() == asset.id()) {
-                faults.push(twice(Part::Own, "id", asset.id().as_str(), "each asset id once in the site"));
+                faults.push(twice(
+                    Part::Own,
+                    "id",
+                    asset.id().as_str(),
+                    "each asset id once in the site",
+                ));
             }
         }
-        if faults.is_empty() { Ok(Self { id, assets }) } else { Err(faults) }
+        if faults.is_empty() {
+            Ok(Self { id, assets })
+        } else {
+            Err(faults)
+        }
     }
 
     /// Its id.
@@ -167,5 +220,11 @@ impl GroupPlan {
 }
 
 fn twice(part: Part, key: &'static str, read: &str, allowed: &str) -> PlanFault {
-    PlanFault { code: Code::Twice, part, key, read: read.into(), allowed: allowed.into() }
+    PlanFault {
+        code: Code::Twice,
+        part,
+        key,
+        read: read.into(),
+        allowed: allowed.into(),
+    }
 }

@@ -50,6 +50,10 @@ pub struct PlanFault {
 
 impl fmt::Display for PlanFault {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        write!(f, "{}: read {}; allowed: {}", self.key, self.read, self.allowed)
+        write!(
+            f,
+            "{}: read {}; allowed: {}",
+            self.key, self.read, self.allowed
+        )
     }
 }

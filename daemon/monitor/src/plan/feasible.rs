@@ -7,29 +7,28 @@
 
 use alloc::{format, string::String, vec::Vec};
 
-use super::{AssetSpec, BandPlan, Edges, Measure, PointPlan, PointSpec, Quantity, Race, WatchPlan};
 use super::fault::{Code, Part, PlanFault};
+use super::{AssetSpec, BandPlan, Edges, Measure, PointPlan, PointSpec, Quantity, Race, WatchPlan};
 
 /// Fewest spectral lines between 0 Hz and a bearing line: with fewer no floor is left beside it to stand over.
 pub const LEAST_LINE_BINS: f64 = 13.0;
 /// Fewest spectral lines a band spans: the main lobe of the Hann window.
-pub const LEAST_BAND_BINS: f64 = 4.0;
+const LEAST_BAND_BINS: f64 = 4.0;
 /// Fewest spectral lines the envelope band spans.
-pub const LEAST_ENVELOPE_BINS: f64 = 32.0;
+const LEAST_ENVELOPE_BINS: f64 = 32.0;
 /// Lines of a family that a bearing's defect must show.
-pub const LEAST_HARMONICS: f64 = 2.0;
+const LEAST_HARMONICS: f64 = 2.0;
 /// A limit is at least so many times what the sensor's noise reads.
 pub const NOISE_MARGIN: f64 = 3.0;
 /// Periods of the lowest velocity that a reading holds (common practice, no source).
-pub const LEAST_PERIODS: f64 = 4.0;
-/// Largest frame, samples.
-pub const LARGEST_FRAME: usize = 65_536;
+const LEAST_PERIODS: f64 = 4.0;
 
 /// Velocity that white acceleration noise of `ug_rthz` reads between two frequencies, mm/s rms.
 ///
 /// n/(2 pi) sqrt(1/f1 - 1/f2), from the integral of (n / 2 pi f)^2; g = 9.80665 m/s2.
 pub fn velocity_noise_mm_s(ug_rthz: f64, from_hz: f64, to_hz: f64) -> f64 {
-    density_ms2(ug_rthz) * 1e3 / core::f64::consts::TAU * (1.0 / from_hz - 1.0 / to_hz).max(0.0).sqrt()
+    density_ms2(ug_rthz) * 1e3 / core::f64::consts::TAU
+        * (1.0 / from_hz - 1.0 / to_hz).max(0.0).sqrt()
 }
 
 /// Acceleration that white noise of `ug_rthz` reads in a band `width_hz` wide, m/s2 rms.
@@ -59,9 +58,11 @@ pub const fn race_order(orders: &humward_signal::bearing::BearingOrders, race: R
     }
 }
 
-/// The smallest power of two of samples in which a line at `hz` has [`LEAST_LINE_BINS`] below it; `None` beyond [`LARGEST_FRAME`].
+/// The smallest power of two of samples in which a line at `hz` has [`LEAST_LINE_BINS`] below it; `None` beyond 65536.
 pub fn frame_for_line(hz: f64, rate_hz: f64) -> Option<usize> {
-    (12..=16).map(|power| 1_usize << power).find(|&frame| hz * frame as f64 / rate_hz >= LEAST_LINE_BINS)
+    (12..=16)
+        .map(|power| 1_usize << power)
+        .find(|&frame| hz * frame as f64 / rate_hz >= LEAST_LINE_BINS)
 }
 
 /// Every answer that cannot be had.
@@ -86,21 +87,43 @@ pub(super) fn faults(spec: &AssetSpec) -> Vec<PlanFault> {
 }
 
 fn cannot(part: Part, key: &'static str, read: String, allowed: String) -> PlanFault {
-    PlanFault { code: Code::CannotResolve, part, key, read, allowed }
+    PlanFault {
+        code: Code::CannotResolve,
+        part,
+        key,
+        read,
+        allowed,
+    }
 }
 
 fn point_faults(spec: &AssetSpec, index: usize, point: &PointSpec, faults: &mut Vec<PlanFault>) {
     let seconds = spec.reading_every.secs();
     let least = LEAST_PERIODS / point.velocity_from_hz;
     if seconds < least {
-        let allowed = format!("at least {least} s, {LEAST_PERIODS} periods of velocity_from_hz = {}", point.velocity_from_hz);
-        faults.push(cannot(Part::Own, "reading_every", format!("{seconds} s"), allowed));
+        let allowed = format!(
+            "at least {least} s, {LEAST_PERIODS} periods of velocity_from_hz = {}",
+            point.velocity_from_hz
+        );
+        faults.push(cannot(
+            Part::Own,
+            "reading_every",
+            format!("{seconds} s"),
+            allowed,
+        ));
     }
     let Some(rate) = point.rate_hz else { return };
     if seconds * rate < point.frame as f64 {
         let least = point.frame as f64 / rate;
-        let allowed = format!("at least {least:.3} s, one frame of {} samples at {rate} samples/s", point.frame);
-        faults.push(cannot(Part::Own, "reading_every", format!("{seconds} s"), allowed));
+        let allowed = format!(
+            "at least {least:.3} s, one frame of {} samples at {rate} samples/s",
+            point.frame
+        );
+        faults.push(cannot(
+            Part::Own,
+            "reading_every",
+            format!("{seconds} s"),
+            allowed,
+        ));
     }
     let resolution = rate / point.frame as f64;
     if let Some((low, high)) = point.envelope_hz
@@ -110,7 +133,10 @@ fn point_faults(spec: &AssetSpec, index: usize, point: &PointSpec, faults: &mut 
             Part::Point(index),
             "envelope_hz",
             format!("[{low}, {high}]"),
-            format!("at least {:.1} Hz wide, {LEAST_ENVELOPE_BINS} spectral lines", LEAST_ENVELOPE_BINS * resolution),
+            format!(
+                "at least {:.1} Hz wide, {LEAST_ENVELOPE_BINS} spectral lines",
+                LEAST_ENVELOPE_BINS * resolution
+            ),
         ));
     }
     for (number, band) in point.bands.iter().enumerate() {
@@ -125,7 +151,10 @@ fn point_faults(spec: &AssetSpec, index: usize, point: &PointSpec, faults: &mut 
                 part,
                 key,
                 format!("{:.2} Hz wide at {} r/min", high - low, spec.speed.lowest),
-                format!("at least {:.2} Hz, 4 spectral lines; a longer frame would do", LEAST_BAND_BINS * resolution),
+                format!(
+                    "at least {:.2} Hz, 4 spectral lines; a longer frame would do",
+                    LEAST_BAND_BINS * resolution
+                ),
             ));
         }
         let (_, high) = band_hz(band.spec().edges, spec.speed.highest);
@@ -134,27 +163,43 @@ fn point_faults(spec: &AssetSpec, index: usize, point: &PointSpec, faults: &mut 
                 part,
                 key,
                 format!("up to {high:.1} Hz at {} r/min", spec.speed.highest),
-                format!("up to half the rate, {} Hz; a higher rate would do", rate / 2.0),
+                format!(
+                    "up to half the rate, {} Hz; a higher rate would do",
+                    rate / 2.0
+                ),
             ));
         }
     }
 }
 
-fn watch_faults(spec: &AssetSpec, index: usize, watch: &WatchPlan, point: &PointSpec, faults: &mut Vec<PlanFault>) {
+fn watch_faults(
+    spec: &AssetSpec,
+    index: usize,
+    watch: &WatchPlan,
+    point: &PointSpec,
+    faults: &mut Vec<PlanFault>,
+) {
     let part = Part::Watch(index);
     match watch.spec().measure {
         Measure::Bearing(race) => bearing_faults(spec, part, race, point, faults),
-        Measure::Band(number) if point.bands.get(usize::from(number)).is_none() => faults.push(PlanFault {
-            code: Code::NotThere,
-            part,
-            key: "measure",
-            read: format!("band number {number}"),
-            allowed: format!("one of the point's {} bands", point.bands.len()),
-        }),
+        Measure::Band(number) if point.bands.get(usize::from(number)).is_none() => {
+            faults.push(PlanFault {
+                code: Code::NotThere,
+                part,
+                key: "measure",
+                read: format!("band number {number}"),
+                allowed: format!("one of the point's {} bands", point.bands.len()),
+            })
+        }
         Measure::HighBandRms => {
             if let Some(rate) = point.rate_hz.filter(|rate| rate / 2.56 < 2000.0) {
                 let allowed = "a rate of at least 5120 samples/s, so that the band reaches from 1000 to 2000 Hz".into();
-                faults.push(cannot(part, "measure", format!("high_band_rms at {rate} samples/s"), allowed));
+                faults.push(cannot(
+                    part,
+                    "measure",
+                    format!("high_band_rms at {rate} samples/s"),
+                    allowed,
+                ));
             }
         }
         Measure::VelocityRms
@@ -188,7 +233,13 @@ fn watch_faults(spec: &AssetSpec, index: usize, watch: &WatchPlan, point: &Point
     }
 }
 
-fn bearing_faults(spec: &AssetSpec, part: Part, race: Race, point: &PointSpec, faults: &mut Vec<PlanFault>) {
+fn bearing_faults(
+    spec: &AssetSpec,
+    part: Part,
+    race: Race,
+    point: &PointSpec,
+    faults: &mut Vec<PlanFault>,
+) {
     let (Some(orders), Some((low, high))) = (&point.bearing, point.envelope_hz) else {
         faults.push(PlanFault {
             code: Code::NotThere,
@@ -204,8 +255,10 @@ fn bearing_faults(spec: &AssetSpec, part: Part, race: Race, point: &PointSpec, f
     if let Some(rate) = point.rate_hz {
         let resolution = rate / point.frame as f64;
         if lowest < LEAST_LINE_BINS * resolution {
-            let remedy = frame_for_line(lowest, rate)
-                .map_or_else(|| "no frame does at this rate; leave the line out".into(), |f| format!("frame = {f} would do"));
+            let remedy = frame_for_line(lowest, rate).map_or_else(
+                || "no frame does at this rate; leave the line out".into(),
+                |f| format!("frame = {f} would do"),
+            );
             faults.push(cannot(
                 part,
                 "measure",
@@ -234,17 +287,25 @@ fn bearing_faults(spec: &AssetSpec, part: Part, race: Race, point: &PointSpec, f
 fn noise(spec: &AssetSpec, measure: Measure, point: &PointSpec) -> Option<f64> {
     let ug = point.noise_ug_rthz?;
     match measure {
-        Measure::VelocityRms | Measure::VelocityPeak => Some(velocity_noise_mm_s(ug, point.velocity_from_hz, 1000.0)),
-        Measure::AccelerationRms | Measure::AccelerationPeak => {
-            point.rate_hz.map(|rate| acceleration_noise_ms2(ug, rate / 2.0))
+        Measure::VelocityRms | Measure::VelocityPeak => {
+            Some(velocity_noise_mm_s(ug, point.velocity_from_hz, 1000.0))
         }
-        Measure::HighBandRms => point.rate_hz.map(|rate| acceleration_noise_ms2(ug, (rate / 2.56).min(1e4) - 1000.0)),
+        Measure::AccelerationRms | Measure::AccelerationPeak => point
+            .rate_hz
+            .map(|rate| acceleration_noise_ms2(ug, rate / 2.0)),
+        Measure::HighBandRms => point
+            .rate_hz
+            .map(|rate| acceleration_noise_ms2(ug, (rate / 2.56).min(1e4) - 1000.0)),
         Measure::Band(number) => {
             let band = point.bands.get(usize::from(number)).map(BandPlan::spec)?;
             let (low, high) = band_hz(band.edges, spec.speed.lowest);
             match band.quantity {
-                Quantity::VelocityRms | Quantity::VelocityPeak => Some(velocity_noise_mm_s(ug, low, high)),
-                Quantity::AccelerationRms | Quantity::AccelerationPeak => Some(acceleration_noise_ms2(ug, high - low)),
+                Quantity::VelocityRms | Quantity::VelocityPeak => {
+                    Some(velocity_noise_mm_s(ug, low, high))
+                }
+                Quantity::AccelerationRms | Quantity::AccelerationPeak => {
+                    Some(acceleration_noise_ms2(ug, high - low))
+                }
                 Quantity::Ratio | Quantity::Decibel => None,
             }
         }
@@ -260,10 +321,17 @@ mod tests {
     /// independent script; `noise.acc.100ug_10k`: 100 ug/sqrt(Hz) over 10 kHz is 10 mg.
     #[test]
     fn noise_of_a_sensor_reads_what_the_formula_says_within_0_2_percent() {
-        for (ug, from, expected) in [(100.0, 10.0, 0.04911), (100.0, 2.0, 0.11025), (25.0, 10.0, 0.012277), (1000.0, 10.0, 0.4911)]
-        {
+        for (ug, from, expected) in [
+            (100.0, 10.0, 0.04911),
+            (100.0, 2.0, 0.11025),
+            (25.0, 10.0, 0.012277),
+            (1000.0, 10.0, 0.4911),
+        ] {
             let read = velocity_noise_mm_s(ug, from, 1000.0);
-            assert!((read / expected - 1.0).abs() < 0.002, "{ug} ug from {from} Hz: {read}, not {expected}");
+            assert!(
+                (read / expected - 1.0).abs() < 0.002,
+                "{ug} ug from {from} Hz: {read}, not {expected}"
+            );
         }
         assert!((acceleration_noise_ms2(100.0, 1e4) / 9.80665 - 0.010).abs() < 1e-9);
     }

@@ -29,7 +29,11 @@ impl Limits {
     /// # Errors
     /// No limit at all, a limit that is not finite and above zero, danger not above alert, or a
     /// deadband that is negative or reaches the lowest limit.
-    pub fn new(alert: Option<f64>, danger: Option<f64>, deadband: f64) -> Result<Self, Vec<PlanFault>> {
+    pub fn new(
+        alert: Option<f64>,
+        danger: Option<f64>,
+        deadband: f64,
+    ) -> Result<Self, Vec<PlanFault>> {
         let mut faults = Vec::new();
         for (key, limit) in [("alert", alert), ("danger", danger)] {
             if let Some(value) = limit
@@ -79,7 +83,11 @@ impl Limits {
             });
         }
         if faults.is_empty() {
-            Ok(Self { alert: alert.map(Limit), danger: danger.map(Limit), deadband })
+            Ok(Self {
+                alert: alert.map(Limit),
+                danger: danger.map(Limit),
+                deadband,
+            })
         } else {
             Err(faults)
         }

@@ -16,7 +16,8 @@ mod zones;
 pub use asset::{AssetPlan, AssetSpec, GroupPlan, RunningRule, SpeedRange};
 pub use fault::{Code, Part, PlanFault};
 pub use feasible::{
-    LEAST_LINE_BINS, NOISE_MARGIN, acceleration_noise_ms2, band_hz, frame_for_line, race_order, velocity_noise_mm_s,
+    LEAST_LINE_BINS, NOISE_MARGIN, acceleration_noise_ms2, band_hz, frame_for_line, race_order,
+    velocity_noise_mm_s,
 };
 pub use limits::{Limit, Limits};
 pub use persistence::{Persistence, PersistenceFault, parse_span};

@@ -56,7 +56,10 @@ impl Persistence {
                 _ => Err(PersistenceFault::Count),
             };
         }
-        if let Some(count) = text.strip_suffix("readings").or_else(|| text.strip_suffix("reading")) {
+        if let Some(count) = text
+            .strip_suffix("readings")
+            .or_else(|| text.strip_suffix("reading"))
+        {
             return match whole(count)? {
                 count @ 1..=1000 => Ok(Self::Readings(count)),
                 _ => Err(PersistenceFault::Count),
@@ -95,7 +98,11 @@ pub fn parse_span(text: &str) -> Option<Span> {
         "d" => 86_400_000_000_000,
         _ => return None,
     };
-    number.parse::<i64>().ok()?.checked_mul(ns).map(Span::from_ns)
+    number
+        .parse::<i64>()
+        .ok()?
+        .checked_mul(ns)
+        .map(Span::from_ns)
 }
 
 #[cfg(test)]
@@ -105,15 +112,30 @@ mod tests {
 
     #[test]
     fn the_three_forms_are_read() {
-        assert_eq!(Persistence::parse("3 readings"), Ok(Persistence::Readings(3)));
-        assert_eq!(Persistence::parse("2min"), Ok(Persistence::Time(Span::from_secs(120))));
-        assert_eq!(Persistence::parse("3 of 5"), Ok(Persistence::OutOf { needed: 3, window: 5 }));
+        assert_eq!(
+            Persistence::parse("3 readings"),
+            Ok(Persistence::Readings(3))
+        );
+        assert_eq!(
+            Persistence::parse("2min"),
+            Ok(Persistence::Time(Span::from_secs(120)))
+        );
+        assert_eq!(
+            Persistence::parse("3 of 5"),
+            Ok(Persistence::OutOf {
+                needed: 3,
+                window: 5
+            })
+        );
     }
 
     #[test]
     fn what_could_never_be_met_is_refused() {
         assert_eq!(Persistence::parse("5 of 3"), Err(PersistenceFault::Count));
-        assert_eq!(Persistence::parse("0 readings"), Err(PersistenceFault::Count));
+        assert_eq!(
+            Persistence::parse("0 readings"),
+            Err(PersistenceFault::Count)
+        );
         assert_eq!(Persistence::parse("3 of 65"), Err(PersistenceFault::Count));
         assert_eq!(Persistence::parse("0s"), Err(PersistenceFault::Time));
         assert_eq!(Persistence::parse("soon"), Err(PersistenceFault::Form));

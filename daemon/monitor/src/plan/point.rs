@@ -5,10 +5,14 @@ use alloc::{format, string::String, vec::Vec};
 use humward_signal::{
     bands::{Band, Base},
     bearing::BearingOrders,
+    lowband::LOWEST_RATE_HZ,
 };
 use humward_wire::id::Id;
 
-use super::{Quantity, fault::{Code, Part, PlanFault}};
+use super::{
+    Quantity,
+    fault::{Code, Part, PlanFault},
+};
 
 /// How raw sample units become m/s2 when a block's unit is `mV` or `count`.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -69,7 +73,10 @@ impl BandPlan {
                 allowed: "two rising numbers above 0".into(),
             });
         }
-        if !matches!(spec.quantity, Quantity::VelocityRms | Quantity::AccelerationRms) {
+        if !matches!(
+            spec.quantity,
+            Quantity::VelocityRms | Quantity::AccelerationRms
+        ) {
             faults.push(PlanFault {
                 code: Code::Contradiction,
                 part: Part::Own,
@@ -139,7 +146,11 @@ impl PointPlan {
     /// Every figure that is out of range or that the declared rate cannot resolve.
     pub fn new(spec: PointSpec) -> Result<Self, Vec<PlanFault>> {
         let faults = check(&spec);
-        if faults.is_empty() { Ok(Self { spec }) } else { Err(faults) }
+        if faults.is_empty() {
+            Ok(Self { spec })
+        } else {
+            Err(faults)
+        }
     }
 
     /// The point as it was asked for, now known to be sound.
@@ -153,17 +164,20 @@ impl PointPlan {
     }
 }
 
-/// Lowest sample rate that leaves a low band of 1000 Hz, samples/s.
-pub const LOWEST_RATE_HZ: f64 = 2560.0;
-
 fn check(spec: &PointSpec) -> Vec<PlanFault> {
     let mut faults = Vec::new();
     let mut fault = |code, key, read: String, allowed: String| {
-        faults.push(PlanFault { code, part: Part::Own, key, read, allowed });
+        faults.push(PlanFault {
+            code,
+            part: Part::Own,
+            key,
+            read,
+            allowed,
+        });
     };
     let mut rest = spec.frame;
     for prime in [2, 3, 5] {
-        while rest > 1 && rest % prime == 0 {
+        while rest > 1 && rest.is_multiple_of(prime) {
             rest /= prime;
         }
     }
@@ -172,7 +186,8 @@ fn check(spec: &PointSpec) -> Vec<PlanFault> {
             Code::OutOfRange,
             "frame",
             format!("{}", spec.frame),
-            "4096 to 65536 samples, a multiple of 4 with no prime factor above 5, such as 8192".into(),
+            "4096 to 65536 samples, a multiple of 4 with no prime factor above 5, such as 8192"
+                .into(),
         );
     }
     if let Some(rate) = spec.rate_hz
@@ -182,7 +197,9 @@ fn check(spec: &PointSpec) -> Vec<PlanFault> {
             Code::OutOfRange,
             "rate_hz",
             format!("{rate}"),
-            format!("{LOWEST_RATE_HZ} to 1000000 samples/s: velocity to 1000 Hz needs at least {LOWEST_RATE_HZ}"),
+            format!(
+                "{LOWEST_RATE_HZ} to 1000000 samples/s: velocity to 1000 Hz needs at least {LOWEST_RATE_HZ}"
+            ),
         );
     }
     let figure = match spec.calibration {
@@ -197,11 +214,21 @@ fn check(spec: &PointSpec) -> Vec<PlanFault> {
     ];
     for (key, value) in figures.into_iter().flatten() {
         if !(value.is_finite() && value > 0.0) {
-            fault(Code::OutOfRange, key, format!("{value}"), "a number above 0".into());
+            fault(
+                Code::OutOfRange,
+                key,
+                format!("{value}"),
+                "a number above 0".into(),
+            );
         }
     }
     if !(0.5..=100.0).contains(&spec.velocity_from_hz) {
-        fault(Code::OutOfRange, "velocity_from_hz", format!("{}", spec.velocity_from_hz), "0.5 to 100 Hz".into());
+        fault(
+            Code::OutOfRange,
+            "velocity_from_hz",
+            format!("{}", spec.velocity_from_hz),
+            "0.5 to 100 Hz".into(),
+        );
     }
     let half = spec.rate_hz.map(|rate| rate / 2.0);
     if let Some((low, high)) = spec.envelope_hz {
@@ -211,7 +238,12 @@ fn check(spec: &PointSpec) -> Vec<PlanFault> {
                 || "two rising numbers above 0, Hz".into(),
                 |half| format!("two rising numbers above 0, up to half the rate, {half} Hz"),
             );
-            fault(Code::OutOfRange, "envelope_hz", format!("[{low}, {high}]"), allowed);
+            fault(
+                Code::OutOfRange,
+                "envelope_hz",
+                format!("[{low}, {high}]"),
+                allowed,
+            );
         }
     }
     faults

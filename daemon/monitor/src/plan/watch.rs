@@ -4,7 +4,10 @@ use alloc::{format, string::String, vec::Vec};
 
 use humward_signal::bearing::BearingOrders;
 
-use super::{Limits, Persistence, fault::{Code, Part, PlanFault}};
+use super::{
+    Limits, Persistence,
+    fault::{Code, Part, PlanFault},
+};
 
 /// A race or part of a rolling bearing whose defect has a rate of its own.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord)]
@@ -105,7 +108,10 @@ impl Quantity {
     /// Whether a clipped signal can only read lower than the truth, so that the value is a lower bound.
     pub const fn clipping_only_lowers(self) -> bool {
         match self {
-            Self::VelocityRms | Self::VelocityPeak | Self::AccelerationRms | Self::AccelerationPeak => true,
+            Self::VelocityRms
+            | Self::VelocityPeak
+            | Self::AccelerationRms
+            | Self::AccelerationPeak => true,
             Self::Ratio | Self::Decibel => false,
         }
     }
@@ -161,13 +167,14 @@ impl WatchPlan {
             });
         }
         match (spec.at_least_ms2, spec.measure) {
-            (Some(least), Measure::Bearing(_)) if !(least.is_finite() && least >= 0.0) => faults.push(PlanFault {
-                code: Code::OutOfRange,
-                part: Part::Own,
-                key: "at_least_ms2",
-                read: format!("{least}"),
-                allowed: "0 or more, m/s2 rms".into(),
-            }),
+            (Some(least), Measure::Bearing(_)) if !(least.is_finite() && least >= 0.0) => faults
+                .push(PlanFault {
+                    code: Code::OutOfRange,
+                    part: Part::Own,
+                    key: "at_least_ms2",
+                    read: format!("{least}"),
+                    allowed: "0 or more, m/s2 rms".into(),
+                }),
             (None, _) | (Some(_), Measure::Bearing(_)) => {}
             (Some(least), _) => faults.push(PlanFault {
                 code: Code::Contradiction,
@@ -177,7 +184,11 @@ impl WatchPlan {
                 allowed: "only beside a bearing measure".into(),
             }),
         }
-        if faults.is_empty() { Ok(Self { spec, full_name }) } else { Err(faults) }
+        if faults.is_empty() {
+            Ok(Self { spec, full_name })
+        } else {
+            Err(faults)
+        }
     }
 
     /// `<watch>.<point>`: the name alarms carry and topics end in.

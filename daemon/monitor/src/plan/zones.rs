@@ -65,7 +65,11 @@ impl ZoneLimits {
             });
         }
         if faults.is_empty() {
-            Ok(Self { class: class.into(), source: source.into(), borders })
+            Ok(Self {
+                class: class.into(),
+                source: source.into(),
+                borders,
+            })
         } else {
             Err(faults)
         }

@@ -1,0 +1,504 @@
+//! Keys of an asset, its points, bands, bearings and encodings.
+
+use super::super::keys::{Key, KeyTable, Kind, Need, Range};
+use super::WATCH;
+
+/// An asset.
+pub(crate) static ASSET: KeyTable = KeyTable {
+    keys: &[
+        Key {
+            name: "id",
+            kind: Kind::Id,
+            need: Need::Required,
+            about: "The tag on its plate, once in the site.",
+        },
+        Key {
+            name: "name",
+            kind: Kind::Text(80),
+            need: Need::Optional("its id"),
+            about: "What people call it and where it stands; alarm sentences use it.",
+        },
+        Key {
+            name: "group",
+            kind: Kind::Id,
+            need: Need::Optional("its own id"),
+            about: "Assets that share a foundation name the same group.",
+        },
+        Key {
+            name: "speed",
+            kind: Kind::Or(&Kind::Number(Range::above_zero(100_000.0, "r/min")), &SPEED),
+            need: Need::Required,
+            about: "Its speed, r/min, or a table of lowest, nominal and highest.",
+        },
+        Key {
+            name: "zones",
+            kind: Kind::Id,
+            need: Need::Optional("velocity has no zones and no usual watch"),
+            about: "Class of a zone table that velocity is told in.",
+        },
+        Key {
+            name: "reading_every",
+            kind: Kind::Span(1, 3600),
+            need: Need::Optional("the site's"),
+            about: "Length of a reading; readings end on its absolute multiples.",
+        },
+        Key {
+            name: "status_every",
+            kind: Kind::Span(1, 86_400),
+            need: Need::Optional("the site's"),
+            about: "How often the status is told when nothing changes.",
+        },
+        Key {
+            name: "sensor_after",
+            kind: Kind::Span(1, 2_592_000),
+            need: Need::Optional("the site's"),
+            about: "How long a point may send nothing usable before its sensor alarm.",
+        },
+        Key {
+            name: "running_from_rpm",
+            kind: Kind::Number(Range::new(0.0, 100_000.0, "r/min")),
+            need: Need::Optional("a fifth of the lowest speed"),
+            about: "At this reported speed and above it runs.",
+        },
+        Key {
+            name: "running_from_mm_s",
+            kind: Kind::Number(Range::above_zero(1000.0, "mm/s rms")),
+            need: Need::Default("0.2"),
+            about: "At this velocity and above it runs while no fresh speed is known.",
+        },
+        Key {
+            name: "speed_valid",
+            kind: Kind::Span(1, 2_592_000),
+            need: Need::Default("\"2min\""),
+            about: "How long a reported speed stays fresh.",
+        },
+        Key {
+            name: "speed_topic",
+            kind: Kind::Topic,
+            need: Need::Optional("speed/<asset> under the root and site"),
+            about: "Topic its speed arrives on.",
+        },
+        Key {
+            name: "process_topic",
+            kind: Kind::Topic,
+            need: Need::Optional("process/<asset> under the root and site"),
+            about: "Topic its process values arrive on.",
+        },
+        Key {
+            name: "default_watches",
+            kind: Kind::Bool,
+            need: Need::Optional("the site's"),
+            about: "Whether its zones and bearings bring their usual watches.",
+        },
+        Key {
+            name: "watch",
+            kind: Kind::Tables(&WATCH),
+            need: Need::Optional("none"),
+            about: "A watch on those of its points that have its measure.",
+        },
+        Key {
+            name: "point",
+            kind: Kind::Tables(&POINT),
+            need: Need::Required,
+            about: "One accelerometer axis at one place.",
+        },
+    ],
+};
+
+/// The speeds of an asset.
+pub(crate) static SPEED: KeyTable = KeyTable {
+    keys: &[
+        Key {
+            name: "lowest",
+            kind: Kind::Number(Range::above_zero(100_000.0, "r/min")),
+            need: Need::Required,
+            about: "The lowest speed it runs at; it decides where the velocity band begins.",
+        },
+        Key {
+            name: "nominal",
+            kind: Kind::Number(Range::above_zero(100_000.0, "r/min")),
+            need: Need::Required,
+            about: "The speed that stands for it while none is reported.",
+        },
+        Key {
+            name: "highest",
+            kind: Kind::Number(Range::above_zero(100_000.0, "r/min")),
+            need: Need::Required,
+            about: "The highest speed it runs at.",
+        },
+    ],
+};
+
+/// A point.
+pub(crate) static POINT: KeyTable = KeyTable {
+    keys: &[
+        Key {
+            name: "id",
+            kind: Kind::Id,
+            need: Need::Required,
+            about: "Its id, once in the asset.",
+        },
+        Key {
+            name: "name",
+            kind: Kind::Text(80),
+            need: Need::Optional("its id"),
+            about: "What people call the place, such as pump drive end.",
+        },
+        Key {
+            name: "source",
+            kind: Kind::Id,
+            need: Need::Optional("its id"),
+            about: "Which block stream feeds it; points of one several-axis sensor name the same source.",
+        },
+        Key {
+            name: "channel",
+            kind: Kind::Whole(Range::new(0.0, 15.0, "")),
+            need: Need::Default("0"),
+            about: "Which channel of the block, from 0.",
+        },
+        Key {
+            name: "topic",
+            kind: Kind::Topic,
+            need: Need::Optional("block/<asset>/<source> under the root and site"),
+            about: "Topic its blocks arrive on.",
+        },
+        Key {
+            name: "encoding",
+            kind: Kind::Or(&Kind::Word(&["cbor-or-json"]), &ENCODING),
+            need: Need::Default("\"cbor-or-json\""),
+            about: "What its blocks look like: ours, told apart by the first byte, or a table for a foreign form.",
+        },
+        Key {
+            name: "rate_hz",
+            kind: Kind::Number(Range::new(2560.0, 1_000_000.0, "samples/s")),
+            need: Need::Optional("the first block tells"),
+            about: "Its sample rate; stating it lets check say what can be resolved.",
+        },
+        Key {
+            name: "frame",
+            kind: Kind::Whole(Range::new(4096.0, 65_536.0, "samples")),
+            need: Need::Default("8192"),
+            about: "Samples under one FFT: a multiple of 4 without prime factors above 5.",
+        },
+        Key {
+            name: "range_g",
+            kind: Kind::Number(Range::above_zero(100_000.0, "g")),
+            need: Need::Optional("only the rails of an integer encoding tell clipping"),
+            about: "Full range of the sensor; samples at or beyond it are clipped.",
+        },
+        Key {
+            name: "noise_ug_rthz",
+            kind: Kind::Number(Range::above_zero(1_000_000.0, "ug/sqrt(Hz)")),
+            need: Need::Optional("limits are not compared with the sensor's noise"),
+            about: "Noise density of the sensor.",
+        },
+        Key {
+            name: "millivolt_per_g",
+            kind: Kind::Number(Range::above_zero(1_000_000.0, "mV/g")),
+            need: Need::Optional("blocks in mV are refused"),
+            about: "Sensitivity that makes acceleration of blocks in mV.",
+        },
+        Key {
+            name: "count_per_g",
+            kind: Kind::Number(Range::above_zero(1e12, "counts/g")),
+            need: Need::Optional("blocks in counts are refused"),
+            about: "Sensitivity that makes acceleration of blocks in counts.",
+        },
+        Key {
+            name: "velocity_from_hz",
+            kind: Kind::Number(Range::new(0.5, 100.0, "Hz")),
+            need: Need::Optional(
+                "10 above 600 r/min lowest speed, 2 from 300, below that 0.4 of the lowest shaft frequency, not under 0.5",
+            ),
+            about: "Lower edge of the velocity band.",
+        },
+        Key {
+            name: "bearing",
+            kind: Kind::Table(&BEARING),
+            need: Need::Optional("no bearing lines are searched"),
+            about: "The rolling bearing there: multiples of the shaft speed, or its geometry.",
+        },
+        Key {
+            name: "envelope_hz",
+            kind: Kind::Pair(Range::above_zero(500_000.0, "Hz")),
+            need: Need::Optional(
+                "with a bearing 2000 to 8000 or 0.4 of the rate, 2000 to 5000 while the rate is not stated",
+            ),
+            about: "Band whose envelope is taken for bearing lines.",
+        },
+        Key {
+            name: "band",
+            kind: Kind::Tables(&BAND),
+            need: Need::Optional("none"),
+            about: "A band of the spectrum with a name, at most 64 of them.",
+        },
+        Key {
+            name: "watch",
+            kind: Kind::Tables(&WATCH),
+            need: Need::Optional("none"),
+            about: "A watch on this point alone.",
+        },
+    ],
+};
+
+/// A bearing, by multiples or by geometry.
+pub(crate) static BEARING: KeyTable = KeyTable {
+    keys: &[
+        Key {
+            name: "outer",
+            kind: Kind::Number(Range::above_zero(200.0, "times shaft speed")),
+            need: Need::Optional("computed from the geometry"),
+            about: "Outer race, BPFO.",
+        },
+        Key {
+            name: "inner",
+            kind: Kind::Number(Range::above_zero(200.0, "times shaft speed")),
+            need: Need::Optional("computed from the geometry"),
+            about: "Inner race, BPFI.",
+        },
+        Key {
+            name: "element",
+            kind: Kind::Number(Range::above_zero(200.0, "times shaft speed")),
+            need: Need::Optional("computed from the geometry"),
+            about: "Rolling element: twice its spin, because a defect strikes both races.",
+        },
+        Key {
+            name: "cage",
+            kind: Kind::Number(Range::above_zero(1.0, "times shaft speed")),
+            need: Need::Optional("computed from the geometry"),
+            about: "Cage, FTF.",
+        },
+        Key {
+            name: "balls",
+            kind: Kind::Whole(Range::new(3.0, 200.0, "rolling elements")),
+            need: Need::Optional("the four multiples are given"),
+            about: "Rolling elements of one row.",
+        },
+        Key {
+            name: "ball_diameter_mm",
+            kind: Kind::Number(Range::above_zero(1000.0, "mm")),
+            need: Need::Optional("the four multiples are given"),
+            about: "Diameter of a rolling element.",
+        },
+        Key {
+            name: "pitch_diameter_mm",
+            kind: Kind::Number(Range::above_zero(10_000.0, "mm")),
+            need: Need::Optional("the four multiples are given"),
+            about: "Diameter of the circle through the elements' centres.",
+        },
+        Key {
+            name: "angle_deg",
+            kind: Kind::Number(Range::new(0.0, 89.0, "degrees")),
+            need: Need::Optional("0"),
+            about: "Contact angle.",
+        },
+    ],
+};
+
+/// A named band.
+pub(crate) static BAND: KeyTable = KeyTable {
+    keys: &[
+        Key {
+            name: "name",
+            kind: Kind::Id,
+            need: Need::Required,
+            about: "Its name; watches say band.<name>.",
+        },
+        Key {
+            name: "hz",
+            kind: Kind::Pair(Range::above_zero(500_000.0, "Hz")),
+            need: Need::Optional("orders is given"),
+            about: "Its edges, fixed.",
+        },
+        Key {
+            name: "orders",
+            kind: Kind::Pair(Range::above_zero(10_000.0, "times shaft speed")),
+            need: Need::Optional("hz is given"),
+            about: "Its edges as multiples of the shaft speed, followed as it moves.",
+        },
+        Key {
+            name: "quantity",
+            kind: Kind::Word(&["velocity", "acceleration"]),
+            need: Need::Required,
+            about: "Whether it reads mm/s rms or m/s2 rms.",
+        },
+    ],
+};
+
+/// A foreign encoding.
+pub(crate) static ENCODING: KeyTable = KeyTable {
+    keys: &[
+        Key {
+            name: "raw",
+            kind: Kind::Table(&RAW),
+            need: Need::Optional("json is given"),
+            about: "Samples without anything around them.",
+        },
+        Key {
+            name: "json",
+            kind: Kind::Table(&JSON),
+            need: Need::Optional("raw is given"),
+            about: "JSON of another maker: where each value stands.",
+        },
+        Key {
+            name: "fixed",
+            kind: Kind::Table(&FIXED),
+            need: Need::Optional("every value comes from the payload"),
+            about: "Values that the foreign JSON does not carry.",
+        },
+    ],
+};
+
+/// Every packing of samples; a test holds it equal to what is decoded.
+const PACKINGS: &[&str] = &[
+    "s16le", "s32le", "f32le", "f64le", "s16be", "s32be", "f32be", "f64be",
+];
+const TIME_UNITS: &[&str] = &["ns", "us", "ms", "s"];
+const RATE: Range = Range::new(1.0, 1_000_000.0, "samples/s");
+const UNITS: &[&str] = &["m/s2", "g", "mV", "count"];
+const CHANNELS: Range = Range::new(1.0, 16.0, "channels");
+
+/// Raw samples.
+pub(crate) static RAW: KeyTable = KeyTable {
+    keys: &[
+        Key {
+            name: "sample",
+            kind: Kind::Word(PACKINGS),
+            need: Need::Required,
+            about: "Type and byte order of a sample.",
+        },
+        Key {
+            name: "header_bytes",
+            kind: Kind::Whole(Range::new(0.0, 65_536.0, "bytes")),
+            need: Need::Default("0"),
+            about: "Bytes to skip before the first sample.",
+        },
+        Key {
+            name: "at_offset",
+            kind: Kind::Whole(Range::new(0.0, 65_536.0, "bytes")),
+            need: Need::Optional("blocks are stamped on arrival"),
+            about: "Where in the header the 64-bit time of the first sample begins.",
+        },
+        Key {
+            name: "at_unit",
+            kind: Kind::Word(TIME_UNITS),
+            need: Need::Default("\"ns\""),
+            about: "What that time counts since 1970 UTC.",
+        },
+        Key {
+            name: "rate_hz",
+            kind: Kind::Number(RATE),
+            need: Need::Required,
+            about: "Sample rate.",
+        },
+        Key {
+            name: "unit",
+            kind: Kind::Word(UNITS),
+            need: Need::Required,
+            about: "Unit of a sample times the scale.",
+        },
+        Key {
+            name: "scale",
+            kind: Kind::Number(Range::above_zero(1e12, "")),
+            need: Need::Default("1.0"),
+            about: "A sample times this is in the unit.",
+        },
+        Key {
+            name: "channels",
+            kind: Kind::Whole(CHANNELS),
+            need: Need::Default("1"),
+            about: "Interleaved axes.",
+        },
+    ],
+};
+
+const fn pointer(name: &'static str, about: &'static str) -> Key {
+    Key {
+        name,
+        kind: Kind::Pointer,
+        need: Need::Optional("a fixed value, or the usual default"),
+        about,
+    }
+}
+
+/// Pointers into foreign JSON.
+pub(crate) static JSON: KeyTable = KeyTable {
+    keys: &[
+        Key {
+            name: "samples",
+            kind: Kind::Pointer,
+            need: Need::Required,
+            about: "Where the samples stand.",
+        },
+        pointer(
+            "at",
+            "Where the time of the first sample stands; without it blocks are stamped on arrival.",
+        ),
+        Key {
+            name: "at_unit",
+            kind: Kind::Word(TIME_UNITS),
+            need: Need::Default("\"ns\""),
+            about: "What a time that is a number counts since 1970 UTC.",
+        },
+        pointer("seq", "Where the counter stands."),
+        pointer("rate", "Where the sample rate stands."),
+        pointer("unit", "Where the unit stands."),
+        pointer("scale", "Where the scale stands."),
+        pointer("channels", "Where the number of axes stands."),
+        pointer("encoding", "Where the encoding of base64 samples stands."),
+        pointer("rpm", "Where a shaft speed stands."),
+        pointer("bias", "Where the sensor's bias stands."),
+    ],
+};
+
+/// Values foreign JSON does not carry.
+pub(crate) static FIXED: KeyTable = KeyTable {
+    keys: &[
+        Key {
+            name: "rate_hz",
+            kind: Kind::Number(RATE),
+            need: Need::Optional("the payload tells"),
+            about: "Sample rate.",
+        },
+        Key {
+            name: "unit",
+            kind: Kind::Word(UNITS),
+            need: Need::Optional("the payload tells"),
+            about: "Unit.",
+        },
+        Key {
+            name: "scale",
+            kind: Kind::Number(Range::above_zero(1e12, "")),
+            need: Need::Optional("1"),
+            about: "A sample times this is in the unit.",
+        },
+        Key {
+            name: "channels",
+            kind: Kind::Whole(CHANNELS),
+            need: Need::Optional("1"),
+            about: "Interleaved axes.",
+        },
+        Key {
+            name: "encoding",
+            kind: Kind::Word(PACKINGS),
+            need: Need::Optional("samples are numbers, or the payload tells"),
+            about: "Type and byte order of base64 samples.",
+        },
+    ],
+};
+
+#[cfg(test)]
+mod tests {
+    use humward_wire::block::Packing;
+
+    use super::PACKINGS;
+
+    #[test]
+    fn the_packings_offered_are_those_that_are_decoded() {
+        let mut decoded: Vec<&str> = Packing::all().map(Packing::name).collect();
+        let mut offered = PACKINGS.to_vec();
+        decoded.sort_unstable();
+        offered.sort_unstable();
+        assert_eq!(offered, decoded);
+    }
+}
