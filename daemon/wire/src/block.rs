@@ -4,7 +4,7 @@
 //! (value x `scale` = `unit`), with rate in Hz and the time of the first sample in ns since 1970 UTC. 32-bit
 //! integers beyond 2^24 lose their lowest bits, below the noise of any sensor. Leaves out: whether the time is
 //! near arrival, whether the rate is true, and any judgement of the signal.
-//! Checked by `tests/corpus.rs`, `tests/malformed.rs`, `tests/round_trip.rs`; typed arrays against RFC 8746.
+//! Checked by `tests/contract/corpus.rs`, `tests/contract/malformed.rs`, `tests/contract/round_trip.rs`; typed arrays against RFC 8746.
 
 mod encode;
 mod fields;

@@ -8,7 +8,9 @@ use alloc::borrow::Cow;
 use alloc::string::String;
 use core::fmt;
 
+use serde::Deserialize;
 use serde::de::{Deserializer as _, Error as _, MapAccess, Visitor};
+use serde_json::de::StrRead;
 use serde_json::value::RawValue;
 
 use crate::field::{Entry, MAX_DEPTH, Take, Value};
@@ -56,19 +58,36 @@ pub(crate) fn entries<'a>(
 ) -> Result<(), Refusal> {
     let mut fault = None;
     let mut reader = serde_json::Deserializer::from_str(text);
-    let read = (&mut reader)
-        .deserialize_map(Entries {
-            text,
-            base,
-            take,
-            fault: &mut fault,
-        })
-        .and_then(|()| reader.end());
+    let entries = Entries {
+        text,
+        base,
+        take,
+        fault: &mut fault,
+    };
+    let read = (&mut reader).deserialize_map(entries);
     match (fault, read) {
         (Some(fault), _) => Err(fault),
-        (None, Ok(())) => Ok(()),
+        (None, Ok(())) => end(&mut reader, text, base),
         (None, Err(error)) => Err(refusal(&error, text, base)),
     }
+}
+
+/// Refuses whatever follows the value just read.
+fn end<'a>(
+    reader: &mut serde_json::Deserializer<StrRead<'a>>,
+    text: &'a str,
+    base: usize,
+) -> Result<(), Refusal> {
+    let Err(error) = reader.end() else {
+        return Ok(());
+    };
+    if cut_number(text) {
+        return Err(Refusal::at(Reason::Truncated, base + text.len()));
+    }
+    Err(Refusal::at(
+        Reason::TrailingBytes,
+        base + place_of(&error, text),
+    ))
 }
 
 struct Entries<'t, 'a> {
@@ -117,33 +136,39 @@ pub(crate) fn refusal(error: &serde_json::Error, text: &str, base: usize) -> Ref
         // Only the outermost value is asked to be an object.
         return Refusal::at(Reason::WrongType, base + start);
     }
-    let line = text
-        .split_inclusive('\n')
-        .take(error.line().saturating_sub(1))
-        .map(str::len)
-        .sum::<usize>();
-    let at = (line + error.column().saturating_sub(1)).min(text.len());
-    Refusal::at(
-        if trailing(text, at) {
-            Reason::TrailingBytes
-        } else {
-            Reason::BadSyntax
-        },
-        base + at,
-    )
+    if cut_number(text) {
+        return Refusal::at(Reason::Truncated, base + text.len());
+    }
+    Refusal::at(Reason::BadSyntax, base + place_of(error, text))
 }
 
-/// Whether a whole JSON value ends before `at`.
-fn trailing(text: &str, at: usize) -> bool {
-    text.get(..at)
-        .is_some_and(|before| serde_json::from_str::<&RawValue>(before).is_ok())
+/// Byte of the library's line and column.
+fn place_of(error: &serde_json::Error, text: &str) -> usize {
+    let lines = error.line().saturating_sub(1);
+    let before = text
+        .split_inclusive('\n')
+        .take(lines)
+        .map(str::len)
+        .sum::<usize>();
+    (before + error.column().saturating_sub(1)).min(text.len())
+}
+
+/// Whether the text ends inside a number: one more digit would make it one.
+fn cut_number(text: &str) -> bool {
+    let number = |c: char| c.is_ascii_digit() || matches!(c, '-' | '+' | '.' | 'e' | 'E');
+    let tail = text
+        .get(text.trim_end_matches(number).len()..)
+        .unwrap_or_default();
+    let whole = |number: &str| serde_json::from_str::<&RawValue>(number).is_ok();
+    !tail.is_empty() && !whole(tail) && whole(&alloc::format!("{tail}0"))
 }
 
 /// The one value a text holds, without white space around it.
 pub(crate) fn single(text: &str) -> Result<&str, Refusal> {
-    serde_json::from_str::<&RawValue>(text)
-        .map(RawValue::get)
-        .map_err(|error| refusal(&error, text, 0))
+    let mut reader = serde_json::Deserializer::from_str(text);
+    let value = <&RawValue>::deserialize(&mut reader).map_err(|error| refusal(&error, text, 0))?;
+    end(&mut reader, text, 0)?;
+    Ok(value.get())
 }
 
 /// A value from its text, which is well formed.

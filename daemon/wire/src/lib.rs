@@ -4,7 +4,7 @@
 //! reason and the byte at fault; a payload is accepted whole or refused whole. Outbound messages are types
 //! whose JSON Schema is generated from them ([`schema::schemas`]). Leaves out: sockets, clocks, files, and any
 //! judgement about a value that is well formed. Times are nanoseconds since 1970 UTC.
-//! Checked by `tests/corpus.rs`, `tests/malformed.rs`, `tests/round_trip.rs` and `tests/schemas.rs`.
+//! Checked by `tests/contract/corpus.rs`, `tests/contract/malformed.rs`, `tests/contract/round_trip.rs` and `tests/contract/schemas.rs`.
 #![no_std]
 
 extern crate alloc;

@@ -4,7 +4,7 @@
 //! every value; `null` where there is no value; words with small integer codes beside them. A consumer ignores keys
 //! it does not know, and the word lists only grow. Evidence travels as CBOR with the same keys.
 //! Messages have a size budget and a stated order in which they are shortened: see [`Event::fit`], [`Status::fit`]
-//! and [`Evidence::fit`]. Checked by `tests/schemas.rs` and `tests/sizes.rs`.
+//! and [`Evidence::fit`]. Checked by `tests/contract/schemas.rs` and `tests/contract/sizes.rs`.
 
 mod event;
 mod evidence;

@@ -3,7 +3,7 @@
 //! First a header map `{"format": "humward-recording", "version": 1, "site": …}`, then one item per input:
 //! `[arrival_ns, topic, payload]` for a message, and in a capture maps keyed `started`, `plan`, `gap`, `link` and
 //! `clock_step`, whose value is the arrival. Arrivals are ns since 1970 UTC and never decrease. A last record that
-//! was cut is told with its byte; the ones before it are read. Checked by `tests/recordings.rs`.
+//! was cut is told with its byte; the ones before it are read. Checked by `tests/contract/recordings.rs`.
 
 mod read;
 mod write;

@@ -3,7 +3,7 @@
 //! One closed list for every inbound message and encoding. `offset` is a byte position in the payload, at most
 //! its length: the first byte of the value at fault, the first byte that cannot be read, or the length when the
 //! payload ends too early. A missing key is told at the start of the map that lacks it.
-//! Checked by `tests/corpus.rs`: `every_reason_is_met_twice_in_each_encoding_it_can_occur_in`.
+//! Checked by `tests/contract/corpus.rs`: `every_reason_is_met_twice_in_each_encoding_it_can_occur_in`.
 
 use core::fmt;
 
@@ -34,7 +34,7 @@ pub enum Form {
 }
 
 macro_rules! reasons {
-    ($($(#[doc = $doc:literal])+ $name:ident $code:literal [$($form:ident)+] $what:literal, $remedy:literal;)+) => {
+    ($($(#[doc = $doc:literal])+ $name:ident $code:literal [$($form:ident)*] $what:literal, $remedy:literal;)+) => {
         /// What can be wrong with a payload. The list is closed; codes are stable.
         #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
         pub enum Reason { $($(#[doc = $doc])+ $name,)+ }
@@ -61,10 +61,10 @@ macro_rules! reasons {
                 match self { $(Reason::$name => $remedy,)+ }
             }
 
-            /// The encodings in which this reason can occur.
+            /// The encodings in which this reason can occur; none when it is not decoding that finds it.
             #[must_use]
             pub const fn occurs_in(self) -> &'static [Form] {
-                match self { $(Reason::$name => &[$(Form::$form,)+],)+ }
+                match self { $(Reason::$name => &[$(Form::$form,)*],)+ }
             }
         }
     };
@@ -110,6 +110,9 @@ reasons! {
     /// A time before 2000 or after 2199.
     TimeOutOfRange "time_out_of_range" [Cbor Json Mapped Raw]
         "the time is before 2000 or after 2199", "set the sensor's clock and send nanoseconds since 1970 UTC";
+    /// A time too far from when the payload arrived; found by who stamps it, in no encoding.
+    FarFromArrival "far_from_arrival" []
+        "the time is too far from its arrival", "set the sensor's clock, or widen at_tolerance in the configuration";
     /// A number outside what the key allows, or not finite.
     OutOfRange "out_of_range" [Cbor Json Mapped]
         "the number is outside the allowed range", "check its unit and sign against the contract";
@@ -205,7 +208,12 @@ mod tests {
                     .bytes()
                     .all(|b| b.is_ascii_lowercase() || b.is_ascii_digit() || b == b'_')
             );
-            assert!(!reason.remedy().is_empty() && !reason.occurs_in().is_empty());
+            assert!(!reason.remedy().is_empty());
+            assert_eq!(
+                reason.occurs_in().is_empty(),
+                *reason == Reason::FarFromArrival,
+                "{reason}"
+            );
         }
     }
 

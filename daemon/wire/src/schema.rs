@@ -1,7 +1,7 @@
 //! JSON Schemas of the outbound messages, generated from their types.
 //!
 //! JSON Schema 2020-12. They describe what is sent: every key is always there, `null` where there is no value.
-//! Kept as files in `schema/` and held by `tests/schemas.rs`; refresh with `HUMWARD_BLESS=1 cargo test -p
+//! Kept as files in `schema/` and held by `tests/contract/schemas.rs`; refresh with `HUMWARD_BLESS=1 cargo test -p
 //! humward-wire`. Evidence travels as CBOR: its schema describes the same map, values being one typed array there.
 
 use alloc::vec;

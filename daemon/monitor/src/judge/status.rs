@@ -114,11 +114,16 @@ fn point_status(judge: &AssetJudge, context: Context<'_>, point: usize) -> Point
     PointStatus {
         point: plan.id.clone(),
         quality,
-        quality_code: quality.code(),
-        at: latest.map(|reading| Instant(reading.end.ns())),
+        age_s: latest.map(|reading| age_s(context, reading)),
         values: latest.map_or_else(Vec::new, |reading| values(reading, quality, None)),
         not_verified,
     }
+}
+
+/// Whole seconds since a reading closed.
+fn age_s(context: Context<'_>, reading: &Reading) -> u32 {
+    let age = context.arrival.ns().saturating_sub(reading.closed.ns()).max(0) / 1_000_000_000;
+    u32::try_from(age).unwrap_or(u32::MAX)
 }
 
 /// Velocity, high band and the strongest bearing line of a reading; named with the point when several are told together.

@@ -1,7 +1,7 @@
 //! Events and retained alarms: one transition, and the present state of one open occurrence.
 //!
 //! Both carry the same account of the occurrence, [`Finding`]. An alarm topic is emptied (zero bytes) when its
-//! occurrence closes. Size: at most [`MAX_EVENT`] bytes after [`Event::fit`]; checked by `tests/sizes.rs`.
+//! occurrence closes. Size: at most [`MAX_EVENT`] bytes after [`Event::fit`]; checked by `tests/contract/sizes.rs`.
 
 use alloc::string::String;
 use alloc::vec::Vec;

@@ -2,7 +2,7 @@
 //!
 //! A CBOR map (RFC 8949) with the keys of the JSON messages; each trace's values are an RFC 8746 typed array,
 //! tag 85: 32-bit little-endian floats. Size: at most [`MAX_EVIDENCE`] bytes after [`Evidence::fit`];
-//! checked by `tests/evidence.rs`.
+//! checked by `tests/contract/evidence.rs`.
 
 use alloc::string::String;
 use alloc::vec::Vec;

@@ -1,6 +1,6 @@
 //! The compact whole of an asset, retained on `status/<asset>`.
 //!
-//! Size: at most [`MAX_STATUS`] bytes for four points with two values each; checked by `tests/sizes.rs`.
+//! Size: at most [`MAX_STATUS`] bytes for four points with two values each; checked by `tests/contract/sizes.rs`.
 
 use alloc::string::String;
 use alloc::vec::Vec;
@@ -37,10 +37,8 @@ pub struct PointStatus {
     pub point: Id,
     /// Whether its signal is believable.
     pub quality: Quality,
-    /// Code of the quality.
-    pub quality_code: u8,
-    /// Signal time of its last reading.
-    pub at: Option<Instant>,
+    /// Age of its last reading in whole seconds, at the `at` of the message; null before the first.
+    pub age_s: Option<u32>,
     /// Its values, the most telling first.
     pub values: Vec<Measured>,
     /// What is assumed and was not verified, such as `rate`.
