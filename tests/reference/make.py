@@ -1,12 +1,14 @@
 """Writes the reference values of the accuracy tests, by scipy, beside this script.
 
-Run: python make.py   (needs numpy and scipy). Each file names this script and the versions used.
+Run: python make.py           (needs numpy and scipy) writes them; each file names this script and the versions used.
+     python make.py --check   writes nothing and fails where what is committed is not what scipy gives here.
 The inputs are rebuilt in Rust sample by sample from the same formulas and the same congruential
 generator, rounded to 32-bit floats on both sides, so only results are kept here.
 """
 
 import json
 import pathlib
+import sys
 
 import numpy as np
 import scipy
@@ -14,6 +16,8 @@ import scipy.fft
 import scipy.signal
 import scipy.stats
 
+CHECK = sys.argv[1:] == ["--check"]
+FAULTS = []
 HERE = pathlib.Path(__file__).parent
 NOTE = f"tests/reference/make.py, scipy {scipy.__version__}, numpy {np.__version__}"
 
@@ -38,7 +42,34 @@ def write(name, **values):
         return float(v) if isinstance(v, np.floating) else v
 
     body = {"source": NOTE} | {k: plain(v) for k, v in values.items()}
-    (HERE / f"{name}.json").write_text(json.dumps(body) + "\n")
+    path = HERE / f"{name}.json"
+    if CHECK:
+        difference = differs(json.loads(path.read_text()), json.loads(json.dumps(body)))
+        print(f"{path.name}: {difference or 'as committed'}")
+        FAULTS.extend([path.name] if difference else [])
+    else:
+        path.write_text(json.dumps(body) + "\n")
+
+
+def differs(committed, made, where=""):
+    """Says where two bodies differ by more than 1e-6 of the largest value beside it; the source note may differ."""
+    if isinstance(made, dict) and isinstance(committed, dict):
+        if made.keys() != committed.keys():
+            return f"{where}: keys {sorted(committed)} against {sorted(made)}"
+        found = (differs(committed[k], made[k], f"{where}.{k}") for k in made if k != "source")
+        return next(filter(None, found), None)
+    if isinstance(made, list) and isinstance(committed, list):
+        if len(made) != len(committed):
+            return f"{where}: {len(committed)} values against {len(made)}"
+        if made and all(isinstance(v, (int, float)) for v in made):
+            largest = max(map(abs, made))
+            worst = max(abs(a - b) for a, b in zip(committed, made))
+            return None if worst <= 1e-6 * largest else f"{where}: {worst:g} apart, largest {largest:g}"
+        found = (differs(c, m, f"{where}[{i}]") for i, (c, m) in enumerate(zip(committed, made)))
+        return next(filter(None, found), None)
+    if isinstance(made, float):
+        return None if abs(committed - made) <= 1e-6 * abs(made) else f"{where}: {committed} against {made}"
+    return None if committed == made else f"{where}: {committed!r} against {made!r}"
 
 
 def welch():
@@ -143,3 +174,5 @@ def moments():
 
 for case in (welch, envelope, velocity, weighting, moments):
     case()
+if FAULTS:
+    sys.exit(f"not what scipy gives: {', '.join(FAULTS)}; run this script and look at what changed")
