@@ -4,6 +4,8 @@
 //! Interpolation (Grandke 1983, IEEE Trans. Instrum. Meas. 32): α = larger neighbour / peak in
 //! amplitude, δ = (2α − 1)/(α + 1), amplitude × (πδ / sin πδ)(1 − δ²). Exact for one noise-free
 //! tone far from zero and the half rate; tones closer than 4 bins disturb each other.
+//! At whole bins a tone's Hann skirt only falls, so a skirt has no local peak: what stands up beside
+//! a strong line is another line, or noise.
 
 use alloc::vec::Vec;
 use core::f64::consts::PI;
@@ -50,43 +52,15 @@ pub(crate) fn grandke(ratio: f64) -> (f64, f64) {
     )
 }
 
-/// Upper bound of a unit tone's own Hann sidelobes, in amplitude, `distance` bins from it.
-///
-/// |sin πd / (πd (1 − d²))| ≤ 1 / (πd (d² − 1)); 1 within the main lobe.
-fn sidelobe(distance: f64) -> f64 {
-    if distance < 2.0 {
-        1.0
-    } else {
-        1.0 / (PI * distance * (distance * distance - 1.0))
-    }
-}
-
-/// True when the peak stands clear (twice in amplitude) of what `stronger` alone would show there.
-pub(crate) fn clear_of(peak: &Peak, stronger: &Peak) -> bool {
-    let skirt = 2.0 * sidelobe((peak.bin - stronger.bin).abs());
-    peak.power > stronger.power * skirt * skirt
-}
-
 /// The `count` strongest local peaks whose tops lie in `from..=to` bins, strongest first.
-///
-/// Sidelobes of stronger peaks, also of those outside the range, are not counted as lines.
 pub(crate) fn strongest(power: &[f64], from: f64, to: f64, count: usize) -> Vec<Peak> {
-    let mut candidates: Vec<Peak> = (1..power.len()).filter_map(|k| at(power, k)).collect();
-    candidates.sort_by(|a, b| b.power.total_cmp(&a.power));
-    let mut accepted: Vec<Peak> = Vec::new();
-    let mut found: Vec<Peak> = Vec::new();
-    for peak in candidates {
-        if found.len() == count {
-            break;
-        }
-        if accepted.iter().all(|stronger| clear_of(&peak, stronger)) {
-            accepted.push(peak);
-            if peak.bin >= from && peak.bin <= to {
-                found.push(peak);
-            }
-        }
-    }
-    found
+    let mut peaks: Vec<Peak> = (1..power.len())
+        .filter_map(|k| at(power, k))
+        .filter(|peak| (from..=to).contains(&peak.bin))
+        .collect();
+    peaks.sort_by(|a, b| b.power.total_cmp(&a.power));
+    peaks.truncate(count);
+    peaks
 }
 
 /// The median of `values`, which it reorders; the mean of the middle two for an even count.

@@ -163,8 +163,8 @@ impl Psd {
 
     /// The `count` largest lines in `f1_hz..=f2_hz`, largest first, interpolated.
     ///
-    /// A line is a local peak clear of the sidelobes of every larger one; noise has peaks too, so
-    /// judge them against a floor. Alone from bin 4: within 0.001 bin and 0.023 %; with an equal
+    /// A line is a local peak, which a stronger line's skirt is not; noise has peaks too, so judge
+    /// them against a floor. Alone from bin 4: within 0.001 bin and 0.023 %; with an equal
     /// neighbour at 4, 6, 8 bins within 0.012, 0.003, 0.0012 bin and 0.33, 0.08, 0.03 %; with one ten
     /// times stronger at 8 bins within 0.012 bin and 0.28 %.
     pub fn lines(&self, f1_hz: f64, f2_hz: f64, count: usize) -> Vec<Line> {

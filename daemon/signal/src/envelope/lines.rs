@@ -71,8 +71,8 @@ impl LineFamily {
 impl EnvelopeSpectrum {
     /// Looks for a family of lines.
     ///
-    /// The fundamental is the highest local peak within the tolerance (never the skirt or a sidelobe
-    /// of a stronger line outside it); harmonics lie within ±1 bin or ±0.5 %, whichever is wider, of
+    /// The fundamental is the highest local peak within the tolerance, which the skirt of a stronger
+    /// line outside it is not; harmonics lie within ±1 bin or ±0.5 %, whichever is wider, of
     /// multiples of the frequency *found*. Without a fundamental nothing is found.
     pub fn search(&self, search: &LineSearch) -> LineFamily {
         let power = self.powers();
@@ -128,14 +128,8 @@ fn floor(power: &[f64], bin: f64) -> Option<f64> {
 fn line_near(power: &[f64], bin: f64, half_width: f64) -> Option<Peak> {
     let first = ((bin - half_width).floor().max(2.0)) as usize;
     let last = ((bin + half_width).ceil().max(0.0) as usize).min(power.len().saturating_sub(2));
-    let found = (first..=last)
+    (first..=last)
         .filter_map(|k| peaks::at(power, k))
         .filter(|peak| (peak.bin - bin).abs() <= half_width)
-        .max_by(|a, b| a.power.total_cmp(&b.power))?;
-    let near =
-        (found.bin - 16.0).max(1.0) as usize..=((found.bin + 16.0) as usize).min(power.len() - 1);
-    near.filter_map(|k| peaks::at(power, k))
-        .filter(|other| other.power > found.power)
-        .all(|other| peaks::clear_of(&found, &other))
-        .then_some(found)
+        .max_by(|a, b| a.power.total_cmp(&b.power))
 }

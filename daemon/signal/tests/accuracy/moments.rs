@@ -152,6 +152,21 @@ fn clipped_sine_counts_its_rails() {
     assert_eq!(statistics.count(), 10);
 }
 
+#[test]
+fn a_run_one_longer_than_the_longest_is_noticed() {
+    // Runs of 2, 3, 4 … equal samples, each in a span of its own between samples that all differ.
+    let mut statistics = Statistics::new(None);
+    for run in 1..=40u16 {
+        let mut samples: Vec<f32> = (0..100u16).map(|i| f32::from(i) + 0.5).collect();
+        samples[50..50 + usize::from(run)].fill(-1.0);
+        statistics.push(&samples);
+        assert_eq!(
+            statistics.summary().unwrap().longest_equal_run,
+            u64::from(run)
+        );
+    }
+}
+
 fn walk(samples: &[f32], rails: Rails) -> (u64, u64, u64) {
     let (mut equal, mut rail, mut count) = ((0, 0), (0, 0), 0);
     for (i, &x) in samples.iter().enumerate() {

@@ -84,7 +84,7 @@ fn ten_times_stronger_neighbour_8_bins_away_disturbs_by_0_012_bin() {
 }
 
 #[test]
-fn lines_are_listed_largest_first_and_sidelobes_are_not_lines() {
+fn lines_are_listed_largest_first_and_skirts_are_not_lines() {
     let samples = sampled(8192, RATE, |t| {
         sine(5.0, 503.3, 0.2)(t) + sine(2.0, 1001.7, 1.0)(t) + sine(0.1, 2503.1, 2.0)(t)
     });
@@ -98,7 +98,7 @@ fn lines_are_listed_largest_first_and_sidelobes_are_not_lines() {
 }
 
 #[test]
-fn lines_outside_the_asked_range_are_left_out_but_still_cast_their_sidelobes() {
+fn skirt_of_a_line_outside_the_asked_range_is_no_line() {
     let samples = sampled(8192, RATE, sine(5.0, 503.3, 0.2));
     let lines = psd_of(8192, RATE, &samples).lines(510.0, 600.0, 5);
     assert!(lines.iter().all(|l| l.amplitude < 1e-3), "{lines:?}");
