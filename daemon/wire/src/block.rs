@@ -9,6 +9,7 @@
 mod encode;
 mod fields;
 mod mapped;
+mod packing;
 mod raw;
 mod samples;
 
@@ -17,8 +18,8 @@ use core::ops::RangeInclusive;
 
 pub use encode::{SampleEncoding, encode_cbor, encode_json};
 pub use mapped::{Fixed, JsonMap, Key, MapFault, TimeUnit};
+pub use packing::{ByteOrder, Packing, SampleType};
 pub use raw::{RawLayout, RawTime};
-pub use samples::{ByteOrder, Packing, SampleType};
 
 use crate::field;
 use crate::refusal::{Form, Refusal};

@@ -61,17 +61,28 @@ impl<'a> Cursor<'a> {
         Ok(taken)
     }
 
+    /// The next `N` bytes.
+    fn chunk<const N: usize>(&mut self) -> Result<[u8; N], Refusal> {
+        match self.bytes.get(self.at..).and_then(<[u8]>::first_chunk) {
+            Some(chunk) => {
+                self.at += N;
+                Ok(*chunk)
+            }
+            None => Err(self.truncated()),
+        }
+    }
+
     /// The head of the next item; refuses reserved and indefinite ones.
     pub(crate) fn head(&mut self) -> Result<Head, Refusal> {
         let at = self.position();
-        let first = self.take(1)?.first().copied().unwrap_or_default();
+        let [first] = self.chunk()?;
         let (major, info) = (first >> 5, first & 0x1f);
         let argument = match info {
             0..=23 => u64::from(info),
-            24..=27 => self
-                .take(1 << (info - 24))?
-                .iter()
-                .fold(0, |number, byte| number << 8 | u64::from(*byte)),
+            24 => u64::from(u8::from_be_bytes(self.chunk()?)),
+            25 => u64::from(u16::from_be_bytes(self.chunk()?)),
+            26 => u64::from(u32::from_be_bytes(self.chunk()?)),
+            27 => u64::from_be_bytes(self.chunk()?),
             31 if (2..=5).contains(&major) => {
                 return Err(Refusal::at(Reason::IndefiniteLength, at));
             }
@@ -96,6 +107,21 @@ impl<'a> Cursor<'a> {
             .map_err(|fault| Refusal::at(Reason::InvalidText, start + fault.valid_up_to()))
     }
 
+    /// Passes over a whole number or float in one step; false, and nothing done, when the next item is another.
+    fn skip_number(&mut self) -> bool {
+        let size = match self.bytes.get(self.at) {
+            Some(0x00..=0x17 | 0x20..=0x37) => 1,
+            Some(0x18 | 0x38) => 2,
+            Some(0x19 | 0x39 | 0xf9) => 3,
+            Some(0x1a | 0x3a | 0xfa) => 5,
+            Some(0x1b | 0x3b | 0xfb) => 9,
+            Some(_) | None => return false,
+        };
+        let there = self.bytes.len() - self.at >= size;
+        self.at += if there { size } else { 0 };
+        there
+    }
+
     /// Passes over the content of a head already read, at most `left` levels deeper.
     pub(crate) fn pass(&mut self, head: Head, left: usize) -> Result<(), Refusal> {
         let items = match head.major {
@@ -111,8 +137,10 @@ impl<'a> Cursor<'a> {
             .ok_or(Refusal::at(Reason::TooDeep, head.at))?;
         // Every item takes at least one byte, so a count that lies ends at the payload's end.
         for _ in 0..items {
-            let inner = self.head()?;
-            self.pass(inner, left)?;
+            if !self.skip_number() {
+                let inner = self.head()?;
+                self.pass(inner, left)?;
+            }
         }
         Ok(())
     }

@@ -4,12 +4,18 @@
 //! MQTT 3.1.1 rules (OASIS standard, section 4.7) from memory: `+` is one level, a last `#` is the level above
 //! and everything below, and neither may occur in the name of a published topic.
 
+mod fault;
+mod filter;
+
 use alloc::format;
 use alloc::string::{String, ToString};
 use alloc::vec::Vec;
-use core::fmt;
 
-use crate::id::{Id, IdFault};
+pub use fault::TopicFault;
+pub use filter::{check_filter, matches};
+
+use crate::id::Id;
+use filter::{characters, overlap};
 
 /// Longest topic root, in bytes; leaves room for six levels of ids in any broker's limit.
 pub const MAX_ROOT: usize = 128;
@@ -56,58 +62,6 @@ pub enum Inbound {
         sender: Id,
         /// The asset.
         asset: Id,
-    },
-}
-
-/// Why a root, filter or topic cannot be used.
-#[derive(Clone, Debug, PartialEq, Eq)]
-pub enum TopicFault {
-    /// No text at all.
-    Empty,
-    /// More bytes than allowed.
-    TooLong {
-        /// Bytes read.
-        length: usize,
-        /// Bytes allowed.
-        allowed: usize,
-    },
-    /// Two slashes in a row, or one at either end.
-    EmptyLevel {
-        /// The level, counted from 1.
-        level: usize,
-    },
-    /// A `+`, `#`, NUL or control character where none may be.
-    Character {
-        /// The character.
-        character: char,
-        /// Its byte position.
-        position: usize,
-    },
-    /// The root starts with `$`, which brokers keep for themselves.
-    Reserved,
-    /// The topic is not below our root and site.
-    Outside {
-        /// What it should start with.
-        prefix: String,
-    },
-    /// The first level below the site is none of `block`, `speed`, `process`, `command`.
-    Kind {
-        /// The level read.
-        kind: String,
-    },
-    /// Too few or too many levels after the kind.
-    Levels {
-        /// Levels read after the kind.
-        read: usize,
-        /// Levels expected.
-        expected: usize,
-    },
-    /// A level is not an id.
-    Level {
-        /// The level, counted from 1 in the whole topic.
-        level: usize,
-        /// What is wrong with it.
-        fault: IdFault,
     },
 }
 
@@ -300,76 +254,6 @@ impl Topics {
     }
 }
 
-/// Checks a subscription filter: `+` and `#` alone in their level, `#` only last, no control characters.
-///
-/// # Errors
-/// [`TopicFault`] with the place.
-pub fn check_filter(filter: &str) -> Result<(), TopicFault> {
-    if filter.is_empty() {
-        return Err(TopicFault::Empty);
-    }
-    if filter.len() > usize::from(u16::MAX) {
-        return Err(TopicFault::TooLong {
-            length: filter.len(),
-            allowed: usize::from(u16::MAX),
-        });
-    }
-    characters(filter, |_| false)?;
-    let mut position = 0;
-    let count = filter.split('/').count();
-    for (index, level) in filter.split('/').enumerate() {
-        for (at, character) in level.char_indices() {
-            let misplaced = match character {
-                '+' => level.len() > 1,
-                '#' => level.len() > 1 || index + 1 < count,
-                _ => false,
-            };
-            if misplaced {
-                return Err(TopicFault::Character {
-                    character,
-                    position: position + at,
-                });
-            }
-        }
-        position += level.len() + 1;
-    }
-    Ok(())
-}
-
-/// Whether a topic is matched by a filter, as a broker would.
-#[must_use]
-pub fn matches(filter: &str, topic: &str) -> bool {
-    if topic.starts_with('$') && filter.starts_with(['+', '#']) {
-        return false;
-    }
-    overlap(filter, topic)
-}
-
-/// Whether some topic is matched by both filters.
-fn overlap(a: &str, b: &str) -> bool {
-    let (mut a, mut b) = (a.split('/'), b.split('/'));
-    loop {
-        match (a.next(), b.next()) {
-            (Some("#"), _) | (_, Some("#")) | (None, None) => return true,
-            (Some(x), Some(y)) if x == y || x == "+" || y == "+" => {}
-            (Some(_), Some(_)) | (Some(_), None) | (None, Some(_)) => return false,
-        }
-    }
-}
-
-fn characters(text: &str, refused: impl Fn(char) -> bool) -> Result<(), TopicFault> {
-    match text
-        .char_indices()
-        .find(|(_, c)| c.is_control() || refused(*c))
-    {
-        Some((position, character)) => Err(TopicFault::Character {
-            character,
-            position,
-        }),
-        None => Ok(()),
-    }
-}
-
 fn level(text: &str) -> String {
     text.chars()
         .map(|c| {
@@ -380,71 +264,6 @@ fn level(text: &str) -> String {
             }
         })
         .collect()
-}
-
-impl fmt::Display for TopicFault {
-    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        match self {
-            TopicFault::Empty => f.write_str("the topic is empty; give at least one level"),
-            TopicFault::TooLong { length, allowed } => {
-                write!(
-                    f,
-                    "the topic has {length} bytes; shorten it to {allowed} or fewer"
-                )
-            }
-            TopicFault::EmptyLevel { level } => {
-                write!(
-                    f,
-                    "level {level} of the topic is empty; remove the extra slash"
-                )
-            }
-            TopicFault::Character {
-                character,
-                position,
-            } => write!(
-                f,
-                "the topic has {character:?} at byte {position}; leave out wildcards and control characters there"
-            ),
-            TopicFault::Reserved => {
-                f.write_str("the topic starts with $, which the broker keeps; choose another root")
-            }
-            TopicFault::Outside { prefix } => {
-                write!(
-                    f,
-                    "the topic is not below {prefix}; publish there or map the topic in the configuration"
-                )
-            }
-            TopicFault::Kind { kind } => {
-                write!(
-                    f,
-                    "{kind:?} is no inbound kind; use block, speed, process or command"
-                )
-            }
-            TopicFault::Levels { read, expected } => {
-                write!(
-                    f,
-                    "the topic has {read} levels after its kind; give {expected}"
-                )
-            }
-            TopicFault::Level { level, fault } => write!(f, "level {level} of the topic: {fault}"),
-        }
-    }
-}
-
-impl core::error::Error for TopicFault {
-    fn source(&self) -> Option<&(dyn core::error::Error + 'static)> {
-        match self {
-            TopicFault::Level { fault, .. } => Some(fault),
-            TopicFault::Empty
-            | TopicFault::TooLong { .. }
-            | TopicFault::EmptyLevel { .. }
-            | TopicFault::Character { .. }
-            | TopicFault::Reserved
-            | TopicFault::Outside { .. }
-            | TopicFault::Kind { .. }
-            | TopicFault::Levels { .. } => None,
-        }
-    }
 }
 
 #[cfg(test)]

@@ -5,7 +5,7 @@ use alloc::vec::Vec;
 use core::fmt::Write;
 
 use super::Block;
-use super::samples::{ByteOrder, Packing, SampleType};
+use super::packing::{ByteOrder, Packing, SampleType};
 use crate::cbor::Writer;
 
 /// How samples are written in CBOR.

@@ -4,7 +4,8 @@
 //! physical unit must bring it: a forgotten scale is a wrong alarm, not a default.
 
 use super::mapped::{Fixed, Key};
-use super::samples::{self, Packing};
+use super::packing::Packing;
+use super::samples;
 use super::{Block, Limits, MAX_RPM, Unit};
 use crate::field::{self, Field, Value};
 use crate::refusal::{Form, Reason, Refusal};
@@ -99,12 +100,7 @@ pub(super) fn build(
         None
     };
     let origin = samples::fill(&mut block.samples, samples, packing, limits)?;
-    block.integer_rail = match &origin {
-        samples::Origin::Bytes { packing, .. } | samples::Origin::Base64 { packing, .. } => {
-            packing.sample.rail()
-        }
-        samples::Origin::Cbor { .. } | samples::Origin::Json { .. } => None,
-    };
+    block.integer_rail = origin.rail();
     if given_scale.is_none() && block.integer_rail.is_some() && block.unit != Unit::Count {
         return Err(Refusal::of(Reason::MissingKey, 0, Key::Scale.name()));
     }

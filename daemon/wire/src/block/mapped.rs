@@ -11,7 +11,7 @@ use core::fmt;
 use serde_json::value::RawValue;
 
 use super::fields::{NAMES, Rules, Slots, build};
-use super::samples::Packing;
+use super::packing::Packing;
 use super::{Block, Limits, Unit};
 use crate::field::{Field, MAX_DEPTH};
 use crate::json;

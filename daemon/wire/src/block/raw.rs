@@ -5,7 +5,8 @@
 
 use super::fields::counts;
 use super::mapped::{Key, TimeUnit};
-use super::samples::{self, Origin, Packing};
+use super::packing::{self, Packing};
+use super::samples::{self, Origin};
 use super::{Block, Limits, Unit};
 use crate::field::{Field, Value};
 use crate::refusal::{Reason, Refusal};
@@ -73,7 +74,7 @@ pub(super) fn decode(
         payload.len() - left
     })?;
     block.samples.clear();
-    samples::unpack(&mut block.samples, bytes, layout.packing);
+    packing::unpack(&mut block.samples, bytes, layout.packing);
     counts(block, start)?;
     samples::check(
         &block.samples,
@@ -96,8 +97,8 @@ fn read_time(payload: &[u8], time: RawTime, packing: Packing) -> Result<i64, Ref
         Key::At.name(),
     ))?;
     let units = match packing.order {
-        samples::ByteOrder::Little => u64::from_le_bytes(bytes),
-        samples::ByteOrder::Big => u64::from_be_bytes(bytes),
+        packing::ByteOrder::Little => u64::from_le_bytes(bytes),
+        packing::ByteOrder::Big => u64::from_be_bytes(bytes),
     };
     i64::try_from(units)
         .ok()

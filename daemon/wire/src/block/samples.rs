@@ -8,123 +8,11 @@ use alloc::vec::Vec;
 use base64::engine::{DecodePaddingMode, GeneralPurpose, GeneralPurposeConfig};
 use base64::{DecodeError, Engine, alphabet};
 
+use super::packing::{ByteOrder, Packing, SampleType, unpack};
 use super::{Limits, MAX_SCALED};
 use crate::cbor::{Cursor, number};
 use crate::field::{Field, Value};
 use crate::refusal::{Reason, Refusal};
-
-/// Type of one sample in bytes.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
-pub enum SampleType {
-    /// 16-bit signed integer.
-    S16,
-    /// 32-bit signed integer.
-    S32,
-    /// 32-bit float.
-    F32,
-    /// 64-bit float.
-    F64,
-}
-
-/// Order of the bytes of one sample.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
-pub enum ByteOrder {
-    /// Lowest byte first.
-    Little,
-    /// Highest byte first.
-    Big,
-}
-
-/// Sample type and byte order.
-#[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
-pub struct Packing {
-    /// Type of one sample.
-    pub sample: SampleType,
-    /// Order of its bytes.
-    pub order: ByteOrder,
-}
-
-/// Every packing with its RFC 8746 tag and its name in a JSON block's `encoding`.
-const PACKINGS: [(u64, &str, SampleType, ByteOrder); 8] = [
-    (73, "s16be", SampleType::S16, ByteOrder::Big),
-    (74, "s32be", SampleType::S32, ByteOrder::Big),
-    (77, "s16le", SampleType::S16, ByteOrder::Little),
-    (78, "s32le", SampleType::S32, ByteOrder::Little),
-    (81, "f32be", SampleType::F32, ByteOrder::Big),
-    (82, "f64be", SampleType::F64, ByteOrder::Big),
-    (85, "f32le", SampleType::F32, ByteOrder::Little),
-    (86, "f64le", SampleType::F64, ByteOrder::Little),
-];
-
-impl SampleType {
-    /// Bytes of one sample.
-    #[must_use]
-    pub const fn bytes(self) -> usize {
-        match self {
-            SampleType::S16 => 2,
-            SampleType::S32 | SampleType::F32 => 4,
-            SampleType::F64 => 8,
-        }
-    }
-
-    /// Lowest and highest code of an integer type.
-    #[must_use]
-    pub const fn rail(self) -> Option<(f32, f32)> {
-        match self {
-            SampleType::S16 => Some((i16::MIN as f32, i16::MAX as f32)),
-            SampleType::S32 => Some((i32::MIN as f32, i32::MAX as f32)),
-            SampleType::F32 | SampleType::F64 => None,
-        }
-    }
-}
-
-impl Packing {
-    /// Every packing there is.
-    pub fn all() -> impl Iterator<Item = Packing> {
-        PACKINGS.iter().map(|(_, _, sample, order)| Packing {
-            sample: *sample,
-            order: *order,
-        })
-    }
-
-    /// The packing of an RFC 8746 tag.
-    #[must_use]
-    pub fn from_tag(tag: u64) -> Option<Packing> {
-        let row = PACKINGS.iter().find(|row| row.0 == tag)?;
-        Some(Packing {
-            sample: row.2,
-            order: row.3,
-        })
-    }
-
-    /// The packing a text such as `s16le` names.
-    #[must_use]
-    pub fn from_name(name: &str) -> Option<Packing> {
-        let row = PACKINGS.iter().find(|row| row.1 == name)?;
-        Some(Packing {
-            sample: row.2,
-            order: row.3,
-        })
-    }
-
-    /// Its RFC 8746 tag.
-    #[must_use]
-    pub fn tag(self) -> u64 {
-        self.row().map_or(0, |row| row.0)
-    }
-
-    /// Its name, such as `s16le`.
-    #[must_use]
-    pub fn name(self) -> &'static str {
-        self.row().map_or("", |row| row.1)
-    }
-
-    fn row(self) -> Option<&'static (u64, &'static str, SampleType, ByteOrder)> {
-        PACKINGS
-            .iter()
-            .find(|row| row.2 == self.sample && row.3 == self.order)
-    }
-}
 
 /// Where samples came from, to find the byte of one of them again.
 #[derive(Debug)]
@@ -151,6 +39,14 @@ pub(super) enum Origin<'a> {
 }
 
 impl Origin<'_> {
+    /// Lowest and highest code of integer samples.
+    pub(super) fn rail(&self) -> Option<(f32, f32)> {
+        match self {
+            Origin::Bytes { packing, .. } | Origin::Base64 { packing, .. } => packing.sample.rail(),
+            Origin::Cbor { .. } | Origin::Json { .. } => None,
+        }
+    }
+
     /// Byte in the payload of the sample at `index`.
     fn place(&self, index: usize) -> usize {
         match self {
@@ -284,6 +180,12 @@ pub(super) fn whole(
 
 /// Refuses samples that are not finite or, scaled, larger than [`MAX_SCALED`]; in one pass when all is well.
 pub(super) fn check(samples: &[f32], scale: f64, origin: &Origin<'_>) -> Result<(), Refusal> {
+    if let Some((low, _)) = origin.rail()
+        && f64::from(low).abs() * scale.abs() <= MAX_SCALED
+    {
+        // No code of the type reaches the bound.
+        return Ok(());
+    }
     // Without its sign bit a float orders as an integer, and infinities and NaN come last.
     let largest = samples.iter().fold(0, |most: i32, sample| {
         most.max((sample.to_bits() & 0x7fff_ffff) as i32)
@@ -306,60 +208,6 @@ pub(super) fn check(samples: &[f32], scale: f64, origin: &Origin<'_>) -> Result<
         Reason::SampleNotFinite
     };
     Err(Refusal::of(reason, origin.place(index), "samples"))
-}
-
-/// Appends the samples in `bytes`; a cut last sample is left out.
-pub(super) fn unpack(out: &mut Vec<f32>, bytes: &[u8], packing: Packing) {
-    use {
-        ByteOrder::{Big, Little},
-        SampleType::{F32, F64, S16, S32},
-    };
-    match (packing.sample, packing.order) {
-        (S16, Little) => out.extend(
-            bytes
-                .as_chunks()
-                .0
-                .iter()
-                .map(|b| f32::from(i16::from_le_bytes(*b))),
-        ),
-        (S16, Big) => out.extend(
-            bytes
-                .as_chunks()
-                .0
-                .iter()
-                .map(|b| f32::from(i16::from_be_bytes(*b))),
-        ),
-        (S32, Little) => out.extend(
-            bytes
-                .as_chunks()
-                .0
-                .iter()
-                .map(|b| i32::from_le_bytes(*b) as f32),
-        ),
-        (S32, Big) => out.extend(
-            bytes
-                .as_chunks()
-                .0
-                .iter()
-                .map(|b| i32::from_be_bytes(*b) as f32),
-        ),
-        (F32, Little) => out.extend(bytes.as_chunks().0.iter().map(|b| f32::from_le_bytes(*b))),
-        (F32, Big) => out.extend(bytes.as_chunks().0.iter().map(|b| f32::from_be_bytes(*b))),
-        (F64, Little) => out.extend(
-            bytes
-                .as_chunks()
-                .0
-                .iter()
-                .map(|b| f64::from_le_bytes(*b) as f32),
-        ),
-        (F64, Big) => out.extend(
-            bytes
-                .as_chunks()
-                .0
-                .iter()
-                .map(|b| f64::from_be_bytes(*b) as f32),
-        ),
-    }
 }
 
 fn from_cbor(
