@@ -65,10 +65,10 @@ fn find(path: &[String]) -> Option<&'static Key> {
     let (last, tables) = path.split_last()?;
     let mut keys: &'static KeyTable = &SITE;
     for table in tables {
-        match keys.find(table)?.kind {
-            Kind::Table(below) => keys = below,
-            _ => return None,
-        }
+        let Kind::Table(below) = keys.find(table)?.kind else {
+            return None;
+        };
+        keys = below;
     }
     keys.find(last).filter(|key| single(&key.kind))
 }
@@ -100,22 +100,14 @@ fn unknown(name: &str, place: Place, gather: &mut Gather<'_>) {
 pub(crate) fn settable() -> Vec<String> {
     let mut names = Vec::new();
     for key in SITE.keys {
-        match key.kind {
-            Kind::Table(below) => names.extend(
-                below
-                    .keys
-                    .iter()
-                    .filter(|inner| single(&inner.kind))
-                    .map(|inner| {
-                        format!(
-                            "{PREFIX}{}__{}",
-                            key.name.to_uppercase(),
-                            inner.name.to_uppercase()
-                        )
-                    }),
-            ),
-            ref kind if single(kind) => names.push(format!("{PREFIX}{}", key.name.to_uppercase())),
-            _ => {}
+        let name = key.name.to_uppercase();
+        if single(&key.kind) {
+            names.push(format!("{PREFIX}{name}"));
+        } else if let Kind::Table(below) = key.kind {
+            let inner = below.keys.iter().filter(|inner| single(&inner.kind));
+            names.extend(
+                inner.map(|inner| format!("{PREFIX}{name}__{}", inner.name.to_uppercase())),
+            );
         }
     }
     names
@@ -123,11 +115,14 @@ pub(crate) fn settable() -> Vec<String> {
 
 /// The value of a variable as its key takes it; what does not read so stays a text, for `verify` to tell.
 fn node(text: &str, kind: &Kind, place: Place) -> Node {
-    let value = match kind {
-        Kind::Bool => text.parse().map(Value::Bool).ok(),
-        Kind::Whole(_) => text.parse().map(Value::Whole).ok(),
-        Kind::Number(_) => text.parse().map(Value::Number).ok(),
-        _ => None,
+    let value = if matches!(kind, Kind::Bool) {
+        text.parse().map(Value::Bool).ok()
+    } else if matches!(kind, Kind::Whole(_)) {
+        text.parse().map(Value::Whole).ok()
+    } else if matches!(kind, Kind::Number(_)) {
+        text.parse().map(Value::Number).ok()
+    } else {
+        None
     };
     Node {
         place,

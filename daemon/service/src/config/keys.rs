@@ -146,6 +146,17 @@ impl fmt::Display for Range {
     }
 }
 
+impl Kind {
+    /// The keys of the table or tables it takes.
+    pub(crate) const fn below(&self) -> Option<&'static KeyTable> {
+        if let Self::Table(below) | Self::Tables(below) | Self::Or(_, below) = self {
+            Some(below)
+        } else {
+            None
+        }
+    }
+}
+
 impl KeyTable {
     /// The key of this name.
     pub(crate) fn find(&self, name: &str) -> Option<&'static Key> {
@@ -210,11 +221,8 @@ pub(crate) fn describe(table: &'static KeyTable, path: &str, out: &mut String) {
             "{path}\n    {}\n    {}; {need}\n",
             key.about, key.kind
         ));
-        match key.kind {
-            Kind::Table(below) | Kind::Tables(below) | Kind::Or(_, below) => {
-                describe(below, &path, out)
-            }
-            _ => {}
+        if let Some(below) = key.kind.below() {
+            describe(below, &path, out);
         }
     }
 }

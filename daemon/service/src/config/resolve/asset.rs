@@ -13,7 +13,8 @@ use super::super::verify::{item_path, join};
 use super::super::view::View;
 use super::point::{self, PointMade};
 use super::suggest;
-use super::watch::{self, Origin, Standing, Written};
+use super::watch::{self, Origin, Standing};
+use super::written::{self, Written};
 
 /// An asset as read, with what routes and site watches need even when its plan failed.
 #[derive(Debug)]
@@ -41,12 +42,12 @@ pub(crate) fn read<'t>(
     let id = view.id("id")?;
     let speed = speed(view, path, gather);
     let mut points = Vec::new();
-    let mut written = watch::of_asset(view, path, gather);
+    let mut written = written::of_asset(view, path, gather);
     for (index, point) in view.tables_of("point", point::KEYS).into_iter().enumerate() {
         let Some(node) = point.node() else { continue };
         let path = item_path(&join(path, "point"), index, node);
         points.extend(point::read(point, &path, speed, gather));
-        written.extend(watch::of_point(point, &path, gather));
+        written.extend(written::of_point(point, &path, gather));
     }
     if view.given("point")
         && !view.is_faulty("point")
@@ -270,7 +271,8 @@ fn watches<'w, 't>(
     (kept, sound)
 }
 
-/// Makes the asset's plan. A usual watch that its sensor cannot feed is left out and noted; everything else is told.
+/// Makes the asset's plan. A usual watch that its sensor cannot feed, and some of those of `bearing.any`,
+/// are left out and noted; everything else is told.
 fn plan(
     mut spec: AssetSpec,
     mut watches: Kept<'_, '_>,
@@ -284,19 +286,20 @@ fn plan(
         Ok(plan) => return (complete.then_some(plan), notes),
         Err(faults) => faults,
     };
-    let mut left_out = Vec::new();
+    let left_out = left_out(&faults, &watches);
     for fault in faults {
-        match usual_that_cannot(&fault, &watches) {
-            Some(index) => {
+        match fault.part {
+            Part::Watch(index) if left_out.contains(&index) => {
                 let ((watch, point), _) = &watches[index];
                 let point = &made.points[*point].id;
                 notes.push(format!(
                     "{}/{point}: {} is not watched: {}; {}",
                     made.id, watch.name, fault.read, fault.allowed
                 ));
-                left_out.push(index);
             }
-            None => tell(&fault, &spec, &watches, made, site, gather),
+            Part::Watch(_) | Part::Own | Part::Point(_) | Part::Band(..) => {
+                tell(&fault, &spec, &watches, made, site, gather);
+            }
         }
     }
     let mut index = 0;
@@ -308,14 +311,34 @@ fn plan(
     (AssetPlan::new(spec).ok().filter(|_| complete), notes)
 }
 
-/// The watch a fault is about, if it is a usual one whose answer cannot be had.
-fn usual_that_cannot(fault: &PlanFault, watches: &Kept<'_, '_>) -> Option<usize> {
-    let Part::Watch(index) = fault.part else {
-        return None;
+/// Watches whose answer cannot be had and whose absence is a note, not a fault: the usual ones, and those
+/// of `bearing.any` as long as one of its four is left at the point.
+fn left_out(faults: &[PlanFault], watches: &Kept<'_, '_>) -> Vec<usize> {
+    let failing: Vec<usize> = faults
+        .iter()
+        .filter_map(|fault| match fault.part {
+            Part::Watch(index) if fault.code == PlanCode::CannotResolve => Some(index),
+            Part::Watch(_) | Part::Own | Part::Point(_) | Part::Band(..) => None,
+        })
+        .collect();
+    let of_any = |index: usize| {
+        let ((watch, point), _) = watches.get(index)?;
+        Some((watch.any_bearing()?, *point))
     };
-    let ((watch, _), _) = watches.get(index)?;
-    (matches!(watch.origin, Origin::Bearing) && fault.code == PlanCode::CannotResolve)
-        .then_some(index)
+    let lives = |index: usize| {
+        let family = of_any(index);
+        family.is_some() && (0..watches.len()).any(|i| of_any(i) == family && !failing.contains(&i))
+    };
+    let usual = |index: usize| {
+        watches
+            .get(index)
+            .is_some_and(|((watch, _), _)| matches!(watch.origin, Origin::Bearing))
+    };
+    failing
+        .iter()
+        .copied()
+        .filter(|&index| usual(index) || lives(index))
+        .collect()
 }
 
 fn tell(

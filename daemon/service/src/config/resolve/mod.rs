@@ -8,6 +8,7 @@ mod encoding;
 mod point;
 mod routes;
 mod watch;
+mod written;
 mod zones;
 
 use std::sync::Arc;
@@ -38,7 +39,7 @@ pub(crate) fn site(tree: &Node, gather: &mut Gather<'_>) -> Option<Loaded> {
     let broker = broker::read(site, id.as_ref(), gateway.as_ref().map(Gateway::id), gather);
     let zones = zones::all(site, gather);
     let topics = id.as_ref().and_then(|id| broker::topics(site, id, gather));
-    let wide = watch::of_site(site, gather);
+    let wide = written::of_site(site, gather);
     let mut made = Vec::new();
     for (index, view) in site.tables_of("asset", &ASSET).into_iter().enumerate() {
         let Some(node) = view.node() else { continue };
@@ -46,7 +47,7 @@ pub(crate) fn site(tree: &Node, gather: &mut Gather<'_>) -> Option<Loaded> {
         made.extend(asset::read(view, &path, site, &zones, &wide, gather));
     }
     once_in_the_site(&made, gather);
-    watch::all_used(&wide, &made, gather);
+    written::all_used(&wide, &made, gather);
     let routes = topics
         .as_ref()
         .map(|topics| routes::settle(topics, &made, gather))

@@ -1,13 +1,15 @@
 //! The key tables: every key of the configuration, declared once.
 //!
-//! `site` holds the top level with `gateway` and `broker`, `asset` an asset with its points,
-//! `watch` limits and zone tables.
+//! `site` holds the top level with `gateway` and `broker`, `asset` an asset with its points, `point`
+//! what stands below a point, `watch` limits and zone tables.
 
 mod asset;
+mod point;
 mod site;
 mod watch;
 
-pub(crate) use asset::{ASSET, BAND, BEARING, ENCODING, FIXED, JSON, POINT, RAW, SPEED};
+pub(crate) use asset::{ASSET, POINT, SPEED};
+pub(crate) use point::{BAND, BEARING, ENCODING, FIXED, JSON, RAW};
 pub(crate) use site::{BROKER, GATEWAY, SITE};
 pub(crate) use watch::{WATCH, ZONE_CLASS, ZONE_TABLE};
 
@@ -51,9 +53,8 @@ mod tests {
                     key.name
                 );
             }
-            match key.kind {
-                Kind::Table(below) | Kind::Tables(below) | Kind::Or(_, below) => walk(below, seen),
-                _ => {}
+            if let Some(below) = key.kind.below() {
+                walk(below, seen);
             }
         }
     }
