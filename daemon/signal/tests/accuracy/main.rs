@@ -1,8 +1,8 @@
 //! Accuracy of the signal mathematics against sources outside the project.
 //!
 //! Each test names its source beside the figure: a published table, a closed form, or scipy through
-//! `tests/reference/make.py`. An id such as `win.hann.enbw_bins` names the check in the project's
-//! sheet of reference values. Inputs are closed forms or a seeded generator, never a clock.
+//! `tests/reference/make.py`. An id such as `win.hann.enbw_bins` names the
+//! quantity checked, so a failure can be looked up. Inputs are closed forms or a seeded generator, never a clock.
 
 #[cfg(test)]
 mod bearings;
