@@ -14,7 +14,7 @@ use crate::{
     action::Action,
     analysis::{Arriving, PointAnalysis, Speeds},
     input::{DeadlineReason, GapCause, Identity, Input, Source},
-    judge::{AssetJudge, Context, SpeedTrack},
+    judge::{AssetJudge, Context, SpeedTrack, Tally},
     plan::{AssetPlan, GroupPlan},
     reading::ShaftSpeed,
     time::{Arrival, SignalTime},
@@ -108,6 +108,11 @@ impl Group {
             }
         };
         self.assets.iter().zip(plan.assets()).map(of_asset).min()
+    }
+
+    /// What became of the readings so far: of each asset of the plan in order, of each of its points in order.
+    pub fn tallies(&self) -> impl Iterator<Item = &[Tally]> {
+        self.assets.iter().map(|asset| asset.judge.tallies())
     }
 
     fn deadline(&mut self, due: Arrival, actions: &mut Vec<Action>) {

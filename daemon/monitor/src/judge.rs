@@ -11,6 +11,7 @@ mod sensor;
 mod sentence;
 mod share;
 mod status;
+mod tally;
 #[cfg(test)]
 pub(crate) mod testing;
 mod watch;
@@ -31,6 +32,7 @@ use crate::{
     reading::{Doubt, Reading},
     time::{Arrival, SignalTime},
 };
+pub use tally::Tally;
 use running::RunningState;
 use sensor::{Cause, SensorChange, SensorState};
 use share::JudgedShare;
@@ -73,6 +75,7 @@ pub struct AssetJudge {
     latest: Vec<Option<Reading>>,
     last_running: Vec<Option<Reading>>,
     share: JudgedShare,
+    tallies: Vec<Tally>,
     losses: BTreeMap<String, u64>,
     link_up: bool,
     status_due: Arrival,
@@ -93,6 +96,7 @@ impl AssetJudge {
             latest: alloc::vec![None; points],
             last_running: alloc::vec![None; points],
             share: JudgedShare::default(),
+            tallies: alloc::vec![Tally::default(); points],
             losses: BTreeMap::new(),
             link_up: true,
             status_due: now,
@@ -103,6 +107,11 @@ impl AssetJudge {
     /// The speeds reported so far.
     pub const fn speeds(&self) -> &SpeedTrack {
         &self.speeds
+    }
+
+    /// What became of the readings of each point, since the start of its plan.
+    pub fn tallies(&self) -> &[Tally] {
+        &self.tallies
     }
 
     /// A speed was reported, r/min.
@@ -174,6 +183,7 @@ impl AssetJudge {
         let runs = self.running.ran_from(reading.start);
         let judged = runs && (reading.doubts.is_empty() || reading.doubts.only_clipped());
         self.share.reading(reading.end, reading.length(), judged && reading.doubts.is_empty());
+        self.tallies[point].count(runs, judged);
         let was_good = self.latest[point].as_ref().map(|latest| latest.doubts);
         self.changed |= was_good != Some(reading.doubts);
         if judged && reading.doubts.is_empty() {
@@ -259,6 +269,7 @@ impl AssetJudge {
             place.map_or_else(|| SensorState::new(context.arrival), |place| self.sensors[place].clone())
         };
         self.sensors = places.iter().map(sensor).collect();
+        self.tallies = alloc::vec![Tally::default(); places.len()];
         self.watches = watches;
         self.changed = true;
     }

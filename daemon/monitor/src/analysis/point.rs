@@ -171,7 +171,8 @@ impl PointAnalysis {
             let now = at.plus(Span::from_secs_f64(done as f64 / rate_hz));
             closed.extend(self.close_if_past(now, point, arrival, speeds));
             let end = self.open_at(now, point, format, block.samples[done * channels + channel]);
-            let until_end = ((end.since(now).secs() * rate_hz) - 1e-6).ceil().max(1.0) as usize;
+            // Times are whole nanoseconds: a sample that lies within a thousandth of the border is on it.
+            let until_end = ((end.since(now).secs() * rate_hz) - 1e-3).ceil().max(1.0) as usize;
             let take = until_end.min(count - done);
             let samples = Channel { samples: &block.samples[done * channels..(done + take) * channels], channel, channels };
             if self.take(&samples, format, scratch).is_err() {
