@@ -23,7 +23,6 @@ use humward_wire::{id::Id, refusal::Refusal};
 
 pub use running::{Operating, SpeedTrack};
 
-
 use crate::{
     action::Action,
     analysis::{Taken, Traces},
@@ -32,10 +31,10 @@ use crate::{
     reading::{Doubt, Reading},
     time::{Arrival, SignalTime},
 };
-pub use tally::Tally;
 use running::RunningState;
 use sensor::{Cause, SensorChange, SensorState};
 use share::JudgedShare;
+pub use tally::Tally;
 use watch::{Change, WatchState};
 
 /// Judged readings after a stop before what was suspended goes on. Common practice, no source.
@@ -115,10 +114,19 @@ impl AssetJudge {
     }
 
     /// A speed was reported, r/min.
-    pub fn speed(&mut self, context: Context<'_>, at: SignalTime, rpm: f64, actions: &mut Vec<Action>) {
+    pub fn speed(
+        &mut self,
+        context: Context<'_>,
+        at: SignalTime,
+        rpm: f64,
+        actions: &mut Vec<Action>,
+    ) {
         self.speeds.report(at, rpm);
         // A late report of an earlier speed says nothing about now.
-        if self.speeds.fresh(at, context.plan.spec().running.speed_valid) == Some(rpm)
+        if self
+            .speeds
+            .fresh(at, context.plan.spec().running.speed_valid)
+            == Some(rpm)
             && self.running.by_speed(&context.plan.spec().running, at, rpm)
         {
             self.running_changed(context, actions);
@@ -182,7 +190,11 @@ impl AssetJudge {
         }
         let runs = self.running.ran_from(reading.start);
         let judged = runs && (reading.doubts.is_empty() || reading.doubts.only_clipped());
-        self.share.reading(reading.end, reading.length(), judged && reading.doubts.is_empty());
+        self.share.reading(
+            reading.end,
+            reading.length(),
+            judged && reading.doubts.is_empty(),
+        );
         self.tallies[point].count(runs, judged);
         let was_good = self.latest[point].as_ref().map(|latest| latest.doubts);
         self.changed |= was_good != Some(reading.doubts);
@@ -193,7 +205,8 @@ impl AssetJudge {
         if judged && self.judging_goes_on(context, actions) {
             for index in 0..self.watches.len() {
                 if context.plan.spec().watches[index].spec().point == point
-                    && let Some(change) = self.watches[index].judge(&context.plan.spec().watches[index], &reading)
+                    && let Some(change) =
+                        self.watches[index].judge(&context.plan.spec().watches[index], &reading)
                 {
                     self.watch_changed(context, index, &reading, change, traces, actions);
                 }
@@ -203,7 +216,10 @@ impl AssetJudge {
 
     /// The next instant at which something is due although nothing arrives.
     pub fn due(&self, plan: &AssetPlan) -> (Arrival, bool) {
-        let sensors = self.sensors.iter().filter_map(|sensor| sensor.due(plan.spec().sensor_after));
+        let sensors = self
+            .sensors
+            .iter()
+            .filter_map(|sensor| sensor.due(plan.spec().sensor_after));
         match sensors.min().filter(|_| self.link_up) {
             Some(sensor) if sensor < self.status_due => (sensor, true),
             _ => (self.status_due, false),
@@ -215,7 +231,10 @@ impl AssetJudge {
         if self.link_up {
             for point in 0..self.sensors.len() {
                 let after = context.plan.spec().sensor_after;
-                if self.sensors[point].due(after).is_some_and(|due| due <= context.arrival) {
+                if self.sensors[point]
+                    .due(after)
+                    .is_some_and(|due| due <= context.arrival)
+                {
                     let change = self.sensors[point].raise(context.arrival, after);
                     self.sensor_changed(context, point, change, actions);
                 }
@@ -243,15 +262,23 @@ impl AssetJudge {
     /// Goes over to another plan of the same asset: unchanged watches and points keep their state, an open
     /// occurrence whose watch is gone is withdrawn with an event and its alarm emptied.
     pub fn replan(&mut self, old: &AssetPlan, context: Context<'_>, actions: &mut Vec<Action>) {
-        let kept = |plan: &AssetPlan, id: &Id| plan.spec().points.iter().position(|point| point.id() == id);
+        let kept = |plan: &AssetPlan, id: &Id| {
+            plan.spec().points.iter().position(|point| point.id() == id)
+        };
         for index in 0..self.watches.len() {
-            let gone = !context.plan.spec().watches.iter().any(|watch| same_watch(old, context.plan, index, watch));
+            let gone = !context
+                .plan
+                .spec()
+                .watches
+                .iter()
+                .any(|watch| same_watch(old, context.plan, index, watch));
             if gone {
                 self.withdraw(old, context, index, actions);
             }
         }
         let watches = context.plan.spec().watches.iter().map(|watch| {
-            let before = (0..self.watches.len()).find(|index| same_watch(old, context.plan, *index, watch));
+            let before =
+                (0..self.watches.len()).find(|index| same_watch(old, context.plan, *index, watch));
             before.map_or_else(WatchState::default, |index| self.watches[index].clone())
         });
         let watches = watches.collect();
@@ -260,13 +287,29 @@ impl AssetJudge {
                 self.sensor_withdrawn(old, context, index, actions);
             }
         }
-        let points = context.plan.spec().points.iter().map(|point| kept(old, point.id()));
+        let points = context
+            .plan
+            .spec()
+            .points
+            .iter()
+            .map(|point| kept(old, point.id()));
         let places: Vec<Option<usize>> = points.collect();
-        let take = |place: &Option<usize>, from: &[Option<Reading>]| place.and_then(|place| from[place].clone());
-        self.latest = places.iter().map(|place| take(place, &self.latest)).collect();
-        self.last_running = places.iter().map(|place| take(place, &self.last_running)).collect();
+        let take = |place: &Option<usize>, from: &[Option<Reading>]| {
+            place.and_then(|place| from[place].clone())
+        };
+        self.latest = places
+            .iter()
+            .map(|place| take(place, &self.latest))
+            .collect();
+        self.last_running = places
+            .iter()
+            .map(|place| take(place, &self.last_running))
+            .collect();
         let sensor = |place: &Option<usize>| {
-            place.map_or_else(|| SensorState::new(context.arrival), |place| self.sensors[place].clone())
+            place.map_or_else(
+                || SensorState::new(context.arrival),
+                |place| self.sensors[place].clone(),
+            )
         };
         self.sensors = places.iter().map(sensor).collect();
         self.tallies = alloc::vec![Tally::default(); places.len()];
@@ -288,14 +331,22 @@ impl AssetJudge {
 
     fn level(&mut self, context: Context<'_>, reading: &Reading, actions: &mut Vec<Action>) {
         let rule = &context.plan.spec().running;
-        let Some((velocity, _)) = reading.velocity else { return };
+        let Some((velocity, _)) = reading.velocity else {
+            return;
+        };
         let believable = reading.doubts.is_empty() || reading.doubts.has(Doubt::SpeedMoving);
         if !believable || self.speeds.fresh(reading.end, rule.speed_valid).is_some() {
             return;
         }
         let recent = reading.end.minus(reading.length());
-        let others = self.latest.iter().flatten().filter(|other| other.end >= recent);
-        let strongest = others.filter_map(|other| other.value(Measure::VelocityRms)).fold(velocity, f64::max);
+        let others = self
+            .latest
+            .iter()
+            .flatten()
+            .filter(|other| other.end >= recent);
+        let strongest = others
+            .filter_map(|other| other.value(Measure::VelocityRms))
+            .fold(velocity, f64::max);
         if self.running.by_level(rule, reading.end, strongest) {
             self.running_changed(context, actions);
         }
@@ -313,7 +364,11 @@ impl AssetJudge {
                 }
             }
             Judging::Suspended if runs => {
-                self.judging = if self.any_open() { Judging::Resuming(RESUME_READINGS) } else { Judging::On };
+                self.judging = if self.any_open() {
+                    Judging::Resuming(RESUME_READINGS)
+                } else {
+                    Judging::On
+                };
             }
             Judging::On | Judging::Resuming(_) | Judging::Suspended => {}
         }
@@ -337,7 +392,9 @@ impl AssetJudge {
     }
 
     fn any_open(&self) -> bool {
-        self.watches.iter().any(|watch| watch.occurrence().is_some())
+        self.watches
+            .iter()
+            .any(|watch| watch.occurrence().is_some())
     }
 
     fn watch_changed(
@@ -360,15 +417,27 @@ impl AssetJudge {
         let full_name = context.plan.spec().watches[index].full_name();
         let open = (!closed).then(|| message::alarm_of(&event));
         actions.push(Action::Event(event));
-        actions.push(Action::Alarm { asset: context.plan.id().clone(), watch: full_name.into(), open });
+        actions.push(Action::Alarm {
+            asset: context.plan.id().clone(),
+            watch: full_name.into(),
+            open,
+        });
         if matches!(change, Change::Raised(_) | Change::Worsened)
             && let Some(traces) = traces()
         {
-            actions.push(Action::Evidence(message::evidence(context, index, reading, id, traces)));
+            actions.push(Action::Evidence(message::evidence(
+                context, index, reading, id, traces,
+            )));
         }
     }
 
-    fn sensor_changed(&mut self, context: Context<'_>, point: usize, change: SensorChange, actions: &mut Vec<Action>) {
+    fn sensor_changed(
+        &mut self,
+        context: Context<'_>,
+        point: usize,
+        change: SensorChange,
+        actions: &mut Vec<Action>,
+    ) {
         self.n += 1;
         self.changed = true;
         let id = message::event_id(context.identity, self.n);
@@ -379,7 +448,12 @@ impl AssetJudge {
         if change == SensorChange::Cleared {
             self.sensors[point].take_closed();
         }
-        self.push_sensor_event(context.plan, context.plan.spec().points[point].id(), event, actions);
+        self.push_sensor_event(
+            context.plan,
+            context.plan.spec().points[point].id(),
+            event,
+            actions,
+        );
     }
 
     fn push_sensor_event(
@@ -392,48 +466,100 @@ impl AssetJudge {
         let stands = event.finding.standing.severity() != humward_wire::out::Severity::None;
         let open = stands.then(|| message::alarm_of(&event));
         actions.push(Action::Event(event));
-        actions.push(Action::Alarm { asset: plan.id().clone(), watch: message::sensor_watch(point), open });
+        actions.push(Action::Alarm {
+            asset: plan.id().clone(),
+            watch: message::sensor_watch(point),
+            open,
+        });
     }
 
-    fn asset_event(&mut self, context: Context<'_>, change: message::AssetChange, actions: &mut Vec<Action>) {
+    fn asset_event(
+        &mut self,
+        context: Context<'_>,
+        change: message::AssetChange,
+        actions: &mut Vec<Action>,
+    ) {
         self.n += 1;
         let id = message::event_id(context.identity, self.n);
-        actions.push(Action::Event(message::asset_event(self, context, change, id.clone())));
+        actions.push(Action::Event(message::asset_event(
+            self,
+            context,
+            change,
+            id.clone(),
+        )));
         for index in 0..self.watches.len() {
             if let Some(alarm) = message::held_alarm(self, context, index, change, id.clone()) {
                 let watch = context.plan.spec().watches[index].full_name().into();
-                actions.push(Action::Alarm { asset: context.plan.id().clone(), watch, open: Some(alarm) });
+                actions.push(Action::Alarm {
+                    asset: context.plan.id().clone(),
+                    watch,
+                    open: Some(alarm),
+                });
             }
         }
     }
 
-    fn withdraw(&mut self, old: &AssetPlan, context: Context<'_>, index: usize, actions: &mut Vec<Action>) {
+    fn withdraw(
+        &mut self,
+        old: &AssetPlan,
+        context: Context<'_>,
+        index: usize,
+        actions: &mut Vec<Action>,
+    ) {
         if let Some(closed) = self.watches[index].withdraw() {
             self.n += 1;
             let id = message::event_id(context.identity, self.n);
             let watch = old.spec().watches[index].full_name();
-            actions.push(Action::Event(message::withdrawn_event(self, context, watch, closed.id, id)));
-            actions.push(Action::Alarm { asset: old.id().clone(), watch: watch.into(), open: None });
+            actions.push(Action::Event(message::withdrawn_event(
+                self, context, watch, closed.id, id,
+            )));
+            actions.push(Action::Alarm {
+                asset: old.id().clone(),
+                watch: watch.into(),
+                open: None,
+            });
         }
     }
 
-    fn sensor_withdrawn(&mut self, old: &AssetPlan, context: Context<'_>, point: usize, actions: &mut Vec<Action>) {
+    fn sensor_withdrawn(
+        &mut self,
+        old: &AssetPlan,
+        context: Context<'_>,
+        point: usize,
+        actions: &mut Vec<Action>,
+    ) {
         if let Some(closed) = self.sensors[point].take_closed() {
             self.n += 1;
             let id = message::event_id(context.identity, self.n);
             let watch = message::sensor_watch(old.spec().points[point].id());
-            actions.push(Action::Event(message::withdrawn_event(self, context, &watch, closed.id, id)));
-            actions.push(Action::Alarm { asset: old.id().clone(), watch, open: None });
+            actions.push(Action::Event(message::withdrawn_event(
+                self, context, &watch, closed.id, id,
+            )));
+            actions.push(Action::Alarm {
+                asset: old.id().clone(),
+                watch,
+                open: None,
+            });
         }
     }
 }
 
 /// Whether `watch` of the new plan is the old plan's watch `index`, unchanged.
-fn same_watch(old: &AssetPlan, new: &AssetPlan, index: usize, watch: &crate::plan::WatchPlan) -> bool {
+fn same_watch(
+    old: &AssetPlan,
+    new: &AssetPlan,
+    index: usize,
+    watch: &crate::plan::WatchPlan,
+) -> bool {
     let before = &old.spec().watches[index];
     let point = |plan: &AssetPlan, watch: &crate::plan::WatchPlan| {
         let point = &plan.spec().points[watch.spec().point];
-        (point.clone(), watch.spec().limits, watch.spec().measure, watch.spec().at_least_ms2)
+        (
+            point.clone(),
+            watch.spec().limits,
+            watch.spec().measure,
+            watch.spec().at_least_ms2,
+        )
     };
     before.full_name() == watch.full_name() && point(old, before) == point(new, watch)
 }

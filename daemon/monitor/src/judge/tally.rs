@@ -33,6 +33,13 @@ mod tests {
         for (runs, judged) in [(true, true), (true, true), (true, false), (false, false)] {
             tally.count(runs, judged);
         }
-        assert_eq!(tally, Tally { judged: 2, doubtful: 1, not_running: 1 });
+        assert_eq!(
+            tally,
+            Tally {
+                judged: 2,
+                doubtful: 1,
+                not_running: 1
+            }
+        );
     }
 }
