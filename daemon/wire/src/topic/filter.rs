@@ -47,12 +47,12 @@ pub fn matches(filter: &str, topic: &str) -> bool {
     overlap(filter, topic)
 }
 
-/// Whether some topic is matched by both filters.
+/// Whether some topic is matched by both filters; only `a` may end in `#`.
 pub(super) fn overlap(a: &str, b: &str) -> bool {
     let (mut a, mut b) = (a.split('/'), b.split('/'));
     loop {
         match (a.next(), b.next()) {
-            (Some("#"), _) | (_, Some("#")) | (None, None) => return true,
+            (Some("#"), _) | (None, None) => return true,
             (Some(x), Some(y)) if x == y || x == "+" || y == "+" => {}
             (Some(_), Some(_)) | (Some(_), None) | (None, Some(_)) => return false,
         }
