@@ -2,7 +2,9 @@
 
 use alloc::sync::Arc;
 
-use humward_wire::{block::Block, command::Command, id::Id, process::Process, refusal::Refusal, speed::Speed};
+use humward_wire::{
+    block::Block, command::Command, id::Id, process::Process, refusal::Refusal, speed::Speed,
+};
 
 use crate::plan::GroupPlan;
 

@@ -4,13 +4,16 @@
 //! stands still or changes speed is not judged; what stands open then is suspended, not ended.
 
 mod account;
+mod announce;
 mod counter;
 mod message;
+mod replan;
 mod running;
 mod sensor;
 mod sentence;
 mod share;
 mod status;
+mod stops;
 mod tally;
 #[cfg(test)]
 pub(crate) mod testing;
@@ -19,7 +22,7 @@ mod words;
 
 use alloc::{collections::BTreeMap, string::String, vec::Vec};
 
-use humward_wire::{id::Id, refusal::Refusal};
+use humward_wire::refusal::Refusal;
 
 pub use running::{Operating, SpeedTrack};
 
@@ -27,18 +30,15 @@ use crate::{
     action::Action,
     analysis::{Taken, Traces},
     input::{GapCause, Identity},
-    plan::{AssetPlan, Measure},
-    reading::{Doubt, Reading},
+    plan::AssetPlan,
+    reading::Reading,
     time::{Arrival, SignalTime},
 };
 use running::RunningState;
 use sensor::{Cause, SensorChange, SensorState};
 use share::JudgedShare;
 pub use tally::Tally;
-use watch::{Change, WatchState};
-
-/// Judged readings after a stop before what was suspended goes on. Common practice, no source.
-const RESUME_READINGS: u8 = 2;
+use watch::WatchState;
 
 /// What every judgement needs to know besides its own state.
 #[derive(Debug, Clone, Copy)]
@@ -258,308 +258,4 @@ impl AssetJudge {
     pub fn want_status(&mut self) {
         self.changed = true;
     }
-
-    /// Goes over to another plan of the same asset: unchanged watches and points keep their state, an open
-    /// occurrence whose watch is gone is withdrawn with an event and its alarm emptied.
-    pub fn replan(&mut self, old: &AssetPlan, context: Context<'_>, actions: &mut Vec<Action>) {
-        let kept = |plan: &AssetPlan, id: &Id| {
-            plan.spec().points.iter().position(|point| point.id() == id)
-        };
-        for index in 0..self.watches.len() {
-            let gone = !context
-                .plan
-                .spec()
-                .watches
-                .iter()
-                .any(|watch| same_watch(old, context.plan, index, watch));
-            if gone {
-                self.withdraw(old, context, index, actions);
-            }
-        }
-        let watches = context.plan.spec().watches.iter().map(|watch| {
-            let before =
-                (0..self.watches.len()).find(|index| same_watch(old, context.plan, *index, watch));
-            before.map_or_else(WatchState::default, |index| self.watches[index].clone())
-        });
-        let watches = watches.collect();
-        for (index, point) in old.spec().points.iter().enumerate() {
-            if kept(context.plan, point.id()).is_none() && self.sensors[index].open().is_some() {
-                self.sensor_withdrawn(old, context, index, actions);
-            }
-        }
-        let points = context
-            .plan
-            .spec()
-            .points
-            .iter()
-            .map(|point| kept(old, point.id()));
-        let places: Vec<Option<usize>> = points.collect();
-        let take = |place: &Option<usize>, from: &[Option<Reading>]| {
-            place.and_then(|place| from[place].clone())
-        };
-        self.latest = places
-            .iter()
-            .map(|place| take(place, &self.latest))
-            .collect();
-        self.last_running = places
-            .iter()
-            .map(|place| take(place, &self.last_running))
-            .collect();
-        let sensor = |place: &Option<usize>| {
-            place.map_or_else(
-                || SensorState::new(context.arrival),
-                |place| self.sensors[place].clone(),
-            )
-        };
-        self.sensors = places.iter().map(sensor).collect();
-        self.tallies = alloc::vec![Tally::default(); places.len()];
-        self.watches = watches;
-        self.changed = true;
-    }
-
-    /// The asset is no longer in the plan: everything open is withdrawn.
-    pub fn retire(&mut self, context: Context<'_>, actions: &mut Vec<Action>) {
-        for index in 0..self.watches.len() {
-            self.withdraw(context.plan, context, index, actions);
-        }
-        for point in 0..self.sensors.len() {
-            if self.sensors[point].open().is_some() {
-                self.sensor_withdrawn(context.plan, context, point, actions);
-            }
-        }
-    }
-
-    fn level(&mut self, context: Context<'_>, reading: &Reading, actions: &mut Vec<Action>) {
-        let rule = &context.plan.spec().running;
-        let Some((velocity, _)) = reading.velocity else {
-            return;
-        };
-        let believable = reading.doubts.is_empty() || reading.doubts.has(Doubt::SpeedMoving);
-        if !believable || self.speeds.fresh(reading.end, rule.speed_valid).is_some() {
-            return;
-        }
-        let recent = reading.end.minus(reading.length());
-        let others = self
-            .latest
-            .iter()
-            .flatten()
-            .filter(|other| other.end >= recent);
-        let strongest = others
-            .filter_map(|other| other.value(Measure::VelocityRms))
-            .fold(velocity, f64::max);
-        if self.running.by_level(rule, reading.end, strongest) {
-            self.running_changed(context, actions);
-        }
-    }
-
-    fn running_changed(&mut self, context: Context<'_>, actions: &mut Vec<Action>) {
-        self.changed = true;
-        let runs = self.running.state() == Operating::Running;
-        match self.judging {
-            Judging::On | Judging::Resuming(_) if !runs => {
-                let told = self.judging != Judging::On;
-                self.judging = Judging::Suspended;
-                if !told && self.any_open() {
-                    self.asset_event(context, message::AssetChange::Suspended, actions);
-                }
-            }
-            Judging::Suspended if runs => {
-                self.judging = if self.any_open() {
-                    Judging::Resuming(RESUME_READINGS)
-                } else {
-                    Judging::On
-                };
-            }
-            Judging::On | Judging::Resuming(_) | Judging::Suspended => {}
-        }
-    }
-
-    /// Counts a judged reading towards going on after a stop; `true` when watches are judged.
-    fn judging_goes_on(&mut self, context: Context<'_>, actions: &mut Vec<Action>) -> bool {
-        match self.judging {
-            Judging::On => true,
-            Judging::Suspended => false,
-            Judging::Resuming(left) if left > 1 => {
-                self.judging = Judging::Resuming(left - 1);
-                false
-            }
-            Judging::Resuming(_) => {
-                self.judging = Judging::On;
-                self.asset_event(context, message::AssetChange::Resumed, actions);
-                true
-            }
-        }
-    }
-
-    fn any_open(&self) -> bool {
-        self.watches
-            .iter()
-            .any(|watch| watch.occurrence().is_some())
-    }
-
-    fn watch_changed(
-        &mut self,
-        context: Context<'_>,
-        index: usize,
-        reading: &Reading,
-        change: Change,
-        traces: &dyn Fn() -> Option<Traces>,
-        actions: &mut Vec<Action>,
-    ) {
-        self.n += 1;
-        self.changed = true;
-        let id = message::event_id(context.identity, self.n);
-        if matches!(change, Change::Raised(_)) {
-            self.watches[index].name_occurrence(id.clone());
-        }
-        let event = message::watch_event(self, context, index, reading, change, id.clone());
-        let closed = self.watches[index].take_closed().is_some();
-        let full_name = context.plan.spec().watches[index].full_name();
-        let open = (!closed).then(|| message::alarm_of(&event));
-        actions.push(Action::Event(event));
-        actions.push(Action::Alarm {
-            asset: context.plan.id().clone(),
-            watch: full_name.into(),
-            open,
-        });
-        if matches!(change, Change::Raised(_) | Change::Worsened)
-            && let Some(traces) = traces()
-        {
-            actions.push(Action::Evidence(message::evidence(
-                context, index, reading, id, traces,
-            )));
-        }
-    }
-
-    fn sensor_changed(
-        &mut self,
-        context: Context<'_>,
-        point: usize,
-        change: SensorChange,
-        actions: &mut Vec<Action>,
-    ) {
-        self.n += 1;
-        self.changed = true;
-        let id = message::event_id(context.identity, self.n);
-        if matches!(change, SensorChange::Raised(_)) {
-            self.sensors[point].name_occurrence(id.clone());
-        }
-        let event = message::sensor_event(self, context, point, change, id);
-        if change == SensorChange::Cleared {
-            self.sensors[point].take_closed();
-        }
-        self.push_sensor_event(
-            context.plan,
-            context.plan.spec().points[point].id(),
-            event,
-            actions,
-        );
-    }
-
-    fn push_sensor_event(
-        &self,
-        plan: &AssetPlan,
-        point: &Id,
-        event: humward_wire::out::Event,
-        actions: &mut Vec<Action>,
-    ) {
-        let stands = event.finding.standing.severity() != humward_wire::out::Severity::None;
-        let open = stands.then(|| message::alarm_of(&event));
-        actions.push(Action::Event(event));
-        actions.push(Action::Alarm {
-            asset: plan.id().clone(),
-            watch: message::sensor_watch(point),
-            open,
-        });
-    }
-
-    fn asset_event(
-        &mut self,
-        context: Context<'_>,
-        change: message::AssetChange,
-        actions: &mut Vec<Action>,
-    ) {
-        self.n += 1;
-        let id = message::event_id(context.identity, self.n);
-        actions.push(Action::Event(message::asset_event(
-            self,
-            context,
-            change,
-            id.clone(),
-        )));
-        for index in 0..self.watches.len() {
-            if let Some(alarm) = message::held_alarm(self, context, index, change, id.clone()) {
-                let watch = context.plan.spec().watches[index].full_name().into();
-                actions.push(Action::Alarm {
-                    asset: context.plan.id().clone(),
-                    watch,
-                    open: Some(alarm),
-                });
-            }
-        }
-    }
-
-    fn withdraw(
-        &mut self,
-        old: &AssetPlan,
-        context: Context<'_>,
-        index: usize,
-        actions: &mut Vec<Action>,
-    ) {
-        if let Some(closed) = self.watches[index].withdraw() {
-            self.n += 1;
-            let id = message::event_id(context.identity, self.n);
-            let watch = old.spec().watches[index].full_name();
-            actions.push(Action::Event(message::withdrawn_event(
-                self, context, watch, closed.id, id,
-            )));
-            actions.push(Action::Alarm {
-                asset: old.id().clone(),
-                watch: watch.into(),
-                open: None,
-            });
-        }
-    }
-
-    fn sensor_withdrawn(
-        &mut self,
-        old: &AssetPlan,
-        context: Context<'_>,
-        point: usize,
-        actions: &mut Vec<Action>,
-    ) {
-        if let Some(closed) = self.sensors[point].take_closed() {
-            self.n += 1;
-            let id = message::event_id(context.identity, self.n);
-            let watch = message::sensor_watch(old.spec().points[point].id());
-            actions.push(Action::Event(message::withdrawn_event(
-                self, context, &watch, closed.id, id,
-            )));
-            actions.push(Action::Alarm {
-                asset: old.id().clone(),
-                watch,
-                open: None,
-            });
-        }
-    }
-}
-
-/// Whether `watch` of the new plan is the old plan's watch `index`, unchanged.
-fn same_watch(
-    old: &AssetPlan,
-    new: &AssetPlan,
-    index: usize,
-    watch: &crate::plan::WatchPlan,
-) -> bool {
-    let before = &old.spec().watches[index];
-    let point = |plan: &AssetPlan, watch: &crate::plan::WatchPlan| {
-        let point = &plan.spec().points[watch.spec().point];
-        (
-            point.clone(),
-            watch.spec().limits,
-            watch.spec().measure,
-            watch.spec().at_least_ms2,
-        )
-    };
-    before.full_name() == watch.full_name() && point(old, before) == point(new, watch)
 }

@@ -29,8 +29,14 @@ pub enum Doubt {
 
 impl Doubt {
     /// All of them, in the order of their bit.
-    pub const ALL: [Self; 6] =
-        [Self::Short, Self::Clipped, Self::Flat, Self::RateChanged, Self::RateUnusable, Self::SpeedMoving];
+    pub const ALL: [Self; 6] = [
+        Self::Short,
+        Self::Clipped,
+        Self::Flat,
+        Self::RateChanged,
+        Self::RateUnusable,
+        Self::SpeedMoving,
+    ];
 
     /// Whether it is the sensor or link that is to blame, not the machine.
     pub const fn is_instrument(self) -> bool {

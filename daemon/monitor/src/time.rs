@@ -101,7 +101,12 @@ impl SignalTime {
     /// An instant on a multiple belongs to the reading it begins.
     pub const fn next_multiple(self, every: Span) -> Self {
         let every = if every.ns() < 1 { 1 } else { every.ns() };
-        Self(self.0.div_euclid(every).saturating_add(1).saturating_mul(every))
+        Self(
+            self.0
+                .div_euclid(every)
+                .saturating_add(1)
+                .saturating_mul(every),
+        )
     }
 }
 
@@ -120,6 +125,9 @@ mod tests {
     fn readings_end_on_absolute_multiples_before_and_after_the_epoch() {
         let ten = Span::from_secs(10);
         let next = |s: i64| SignalTime::from_ns(s * SECOND).next_multiple(ten).ns() / SECOND;
-        assert_eq!([next(0), next(9), next(10), next(-1), next(-10)], [10, 10, 20, 0, 0]);
+        assert_eq!(
+            [next(0), next(9), next(10), next(-1), next(-10)],
+            [10, 10, 20, 0, 0]
+        );
     }
 }

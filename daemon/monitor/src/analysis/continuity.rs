@@ -79,7 +79,10 @@ impl Continuity {
     }
 
     fn expect(&mut self, at: SignalTime, length: Span, seq: Option<u64>) {
-        self.next = Some(Next { at: at.plus(length), seq: seq.map(|seq| seq.wrapping_add(1)) });
+        self.next = Some(Next {
+            at: at.plus(length),
+            seq: seq.map(|seq| seq.wrapping_add(1)),
+        });
         self.late_next = None;
         self.late_in_row = 0;
     }
@@ -97,7 +100,10 @@ mod tests {
         let mut continuity = Continuity::default();
         let ms = |ms: i64| SignalTime::from_ns(ms * 1_000_000);
         let length = Span::from_ns(100_000_000);
-        blocks.iter().map(|(at, seq)| continuity.join(ms(*at), length, *seq)).collect()
+        blocks
+            .iter()
+            .map(|(at, seq)| continuity.join(ms(*at), length, *seq))
+            .collect()
     }
 
     fn gap(ms: i64) -> Joint {
@@ -118,14 +124,29 @@ mod tests {
 
     #[test]
     fn a_doubled_or_reordered_block_is_late() {
-        let seen = joints(&[(0, Some(1)), (100, Some(2)), (0, Some(1)), (100, Some(2)), (200, Some(3))]);
+        let seen = joints(&[
+            (0, Some(1)),
+            (100, Some(2)),
+            (0, Some(1)),
+            (100, Some(2)),
+            (200, Some(3)),
+        ]);
         assert_eq!(seen[2..], [Joint::Late, Joint::Late, Joint::Follows]);
     }
 
     #[test]
     fn a_clock_set_back_is_believed_at_the_third_block() {
-        let seen = joints(&[(10_000, None), (0, None), (100, None), (200, None), (300, None)]);
-        assert_eq!(seen[1..], [Joint::Late, Joint::Late, gap(0), Joint::Follows]);
+        let seen = joints(&[
+            (10_000, None),
+            (0, None),
+            (100, None),
+            (200, None),
+            (300, None),
+        ]);
+        assert_eq!(
+            seen[1..],
+            [Joint::Late, Joint::Late, gap(0), Joint::Follows]
+        );
     }
 
     #[test]

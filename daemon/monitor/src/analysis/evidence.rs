@@ -35,7 +35,10 @@ impl Waveform {
     /// Room for [`TURNS`] turns at `lowest_rpm`.
     pub(super) fn for_speed(low_rate_hz: f64, lowest_rpm: f64) -> Self {
         let wanted = (TURNS * 60.0 / lowest_rpm * low_rate_hz).ceil();
-        Self { samples: Vec::new(), most: (wanted as usize).clamp(FEWEST_SAMPLES, MOST_SAMPLES) }
+        Self {
+            samples: Vec::new(),
+            most: (wanted as usize).clamp(FEWEST_SAMPLES, MOST_SAMPLES),
+        }
     }
 
     pub(super) fn clear(&mut self) {
@@ -76,21 +79,25 @@ pub(super) fn traces(plans: &Plans, sums: &Sums, waveform: &Waveform) -> Option<
         thinned: 1,
         values: (0..=bins).map(velocity).collect(),
     };
-    let envelope = sums.envelope.as_ref().zip(plans.envelope.as_ref()).map(|(envelope, plan)| {
-        let df = envelope.resolution_hz();
-        let bins = ((1000.0 / df) as usize).min(envelope.bins() - 1);
-        let (from, to) = plan.band_hz();
-        Trace {
-            start: 0.0,
-            step: df,
-            step_unit: "Hz".into(),
-            unit: "(m/s2)2 peak".into(),
-            band_hz: Some([from, to]),
-            resolution_hz: Some(df),
-            thinned: 1,
-            values: (0..=bins).map(|k| envelope.amplitude(k) as f32).collect(),
-        }
-    });
+    let envelope = sums
+        .envelope
+        .as_ref()
+        .zip(plans.envelope.as_ref())
+        .map(|(envelope, plan)| {
+            let df = envelope.resolution_hz();
+            let bins = ((1000.0 / df) as usize).min(envelope.bins() - 1);
+            let (from, to) = plan.band_hz();
+            Trace {
+                start: 0.0,
+                step: df,
+                step_unit: "Hz".into(),
+                unit: "(m/s2)2 peak".into(),
+                band_hz: Some([from, to]),
+                resolution_hz: Some(df),
+                thinned: 1,
+                values: (0..=bins).map(|k| envelope.amplitude(k) as f32).collect(),
+            }
+        });
     let waveform = Trace {
         start: 0.0,
         step: 1.0 / plans.low.low_rate_hz(),
@@ -101,5 +108,9 @@ pub(super) fn traces(plans: &Plans, sums: &Sums, waveform: &Waveform) -> Option<
         thinned: 1,
         values: waveform.newest(),
     };
-    Some(Traces { spectrum, envelope, waveform })
+    Some(Traces {
+        spectrum,
+        envelope,
+        waveform,
+    })
 }

@@ -20,12 +20,14 @@ impl Format {
         let per_unit = match (block.unit, point.calibration) {
             (Unit::MetrePerSecondSquared, _) => 1.0,
             (Unit::G, _) => units::g_to_m_s2(1.0),
-            (Unit::Millivolt, Calibration::MillivoltPerG(per_g)) | (Unit::Count, Calibration::CountPerG(per_g)) => {
-                units::g_to_m_s2(1.0) / per_g
-            }
+            (Unit::Millivolt, Calibration::MillivoltPerG(per_g))
+            | (Unit::Count, Calibration::CountPerG(per_g)) => units::g_to_m_s2(1.0) / per_g,
             (Unit::Millivolt | Unit::Count, _) => return None,
         };
-        Some(Self { gain: (block.scale * per_unit) as f32, rails: block.integer_rail })
+        Some(Self {
+            gain: (block.scale * per_unit) as f32,
+            rails: block.integer_rail,
+        })
     }
 
     /// One raw value in m/s2 about `pivot`.

@@ -44,14 +44,21 @@ impl Plans {
     /// The rate is too low for velocity to 1000 Hz, or the envelope band does not fit below half of it.
     pub(super) fn new(point: &PointSpec, rate_hz: f64) -> Result<Self, RateFault> {
         let frame = FramePlan::new(point.frame, rate_hz).map_err(RateFault::Frame)?;
-        let response = Response::Velocity { lower_edge_hz: point.velocity_from_hz };
+        let response = Response::Velocity {
+            lower_edge_hz: point.velocity_from_hz,
+        };
         let low = LowBandPlan::new(point.frame, rate_hz, response).map_err(RateFault::LowBand)?;
         let envelope = match point.envelope_hz {
-            Some((from, to)) => {
-                Some(EnvelopePlan::new(point.frame, rate_hz, from, to).map_err(RateFault::Envelope)?)
-            }
+            Some((from, to)) => Some(
+                EnvelopePlan::new(point.frame, rate_hz, from, to).map_err(RateFault::Envelope)?,
+            ),
             None => None,
         };
-        Ok(Self { rate_hz, frame, low, envelope })
+        Ok(Self {
+            rate_hz,
+            frame,
+            low,
+            envelope,
+        })
     }
 }

@@ -89,7 +89,10 @@ pub struct Arriving<'a> {
 
 impl core::fmt::Debug for Arriving<'_> {
     fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
-        f.debug_struct("Arriving").field("at", &self.at).field("arrival", &self.arrival).finish_non_exhaustive()
+        f.debug_struct("Arriving")
+            .field("at", &self.at)
+            .field("arrival", &self.arrival)
+            .finish_non_exhaustive()
     }
 }
 
@@ -132,8 +135,15 @@ impl PointAnalysis {
         scratch: &mut Scratch,
         closed: &mut Vec<Reading>,
     ) -> Taken {
-        let Arriving { block, at, arrival, speeds } = arriving;
-        let Some(format) = Format::of(block, point) else { return Taken::Uncalibrated };
+        let Arriving {
+            block,
+            at,
+            arrival,
+            speeds,
+        } = arriving;
+        let Some(format) = Format::of(block, point) else {
+            return Taken::Uncalibrated;
+        };
         let channels = usize::from(block.channels.max(1));
         let channel = usize::from(point.channel);
         if channel >= channels {
@@ -174,7 +184,11 @@ impl PointAnalysis {
             // Times are whole nanoseconds: a sample that lies within a thousandth of the border is on it.
             let until_end = ((end.since(now).secs() * rate_hz) - 1e-3).ceil().max(1.0) as usize;
             let take = until_end.min(count - done);
-            let samples = Channel { samples: &block.samples[done * channels..(done + take) * channels], channel, channels };
+            let samples = Channel {
+                samples: &block.samples[done * channels..(done + take) * channels],
+                channel,
+                channels,
+            };
             if self.take(&samples, format, scratch).is_err() {
                 self.machinery = None;
                 self.break_run();
@@ -191,12 +205,21 @@ impl PointAnalysis {
     /// When the reading in progress will have waited long enough for its last blocks.
     pub fn overdue(&self) -> Option<Arrival> {
         let (open, (next, arrival, length)) = (self.open.as_ref()?, self.newest?);
-        let grace = if length.times(2) > GRACE { length.times(2) } else { GRACE };
+        let grace = if length.times(2) > GRACE {
+            length.times(2)
+        } else {
+            GRACE
+        };
         Some(arrival.plus(open.end.since(next)).plus(grace))
     }
 
     /// Closes the reading in progress with what has come.
-    pub fn close_overdue(&mut self, point: &PointSpec, now: Arrival, speeds: &dyn Speeds) -> Option<Reading> {
+    pub fn close_overdue(
+        &mut self,
+        point: &PointSpec,
+        now: Arrival,
+        speeds: &dyn Speeds,
+    ) -> Option<Reading> {
         self.close(point, now, speeds)
     }
 
@@ -214,11 +237,16 @@ impl PointAnalysis {
 
     /// Makes sure the plans are those of `rate_hz`; `false` when that rate cannot serve.
     fn plan_for(&mut self, point: &PointSpec, rate_hz: f64) -> bool {
-        let fits = self.machinery.as_ref().is_some_and(|m| (m.plans.rate_hz - rate_hz).abs() <= 1e-6 * rate_hz);
+        let fits = self
+            .machinery
+            .as_ref()
+            .is_some_and(|m| (m.plans.rate_hz - rate_hz).abs() <= 1e-6 * rate_hz);
         if fits {
             return true;
         }
-        let Ok(plans) = Plans::new(point, rate_hz) else { return false };
+        let Ok(plans) = Plans::new(point, rate_hz) else {
+            return false;
+        };
         let had_one = self.machinery.is_some();
         self.machinery = Some(Machinery {
             sums: Sums::new(&plans),
@@ -255,18 +283,34 @@ impl PointAnalysis {
         arrival: Arrival,
         speeds: &dyn Speeds,
     ) -> Option<Reading> {
-        let past = self.open.as_ref().is_some_and(|open| now >= open.end || now < open.start);
-        if past { self.close(point, arrival, speeds) } else { None }
+        let past = self
+            .open
+            .as_ref()
+            .is_some_and(|open| now >= open.end || now < open.start);
+        if past {
+            self.close(point, arrival, speeds)
+        } else {
+            None
+        }
     }
 
     /// Sees to it that the reading `now` lies in is open, and tells its end; `first` is its first raw value.
-    fn open_at(&mut self, now: SignalTime, point: &PointSpec, format: Format, first: f32) -> SignalTime {
+    fn open_at(
+        &mut self,
+        now: SignalTime,
+        point: &PointSpec,
+        format: Format,
+        first: f32,
+    ) -> SignalTime {
         let end = now.next_multiple(self.every);
         match &mut self.open {
             Some(open) => {
                 if open.format != format {
                     // Rails of another scale: only the sensor's own range could still tell clipping.
-                    open.format = Format { rails: None, ..format };
+                    open.format = Format {
+                        rails: None,
+                        ..format
+                    };
                 }
                 open.end
             }
@@ -275,20 +319,39 @@ impl PointAnalysis {
                     self.pivot = format.convert(first, 0.0);
                 }
                 if let Some(machinery) = &mut self.machinery {
-                    machinery.sums.clear(format.rails_about(self.pivot, point.range_ms2));
+                    machinery
+                        .sums
+                        .clear(format.rails_about(self.pivot, point.range_ms2));
                 }
                 let start = end.minus(self.every);
-                self.open = Some(Open { start, end, gaps: 0, doubts: Doubts::default(), format });
+                self.open = Some(Open {
+                    start,
+                    end,
+                    gaps: 0,
+                    doubts: Doubts::default(),
+                    format,
+                });
                 end
             }
         }
     }
 
     /// Takes in samples that lie in the open reading and follow the last ones of the run.
-    fn take(&mut self, samples: &Channel<'_>, format: Format, scratch: &mut Scratch) -> Result<(), FrameFault> {
-        let Some(machinery) = &mut self.machinery else { return Ok(()) };
+    fn take(
+        &mut self,
+        samples: &Channel<'_>,
+        format: Format,
+        scratch: &mut Scratch,
+    ) -> Result<(), FrameFault> {
+        let Some(machinery) = &mut self.machinery else {
+            return Ok(());
+        };
         let n = machinery.frame.len();
-        let run = self.run.get_or_insert_with(|| Run { filled: 0, low: machinery.plans.low.start(), low_given: 0 });
+        let run = self.run.get_or_insert_with(|| Run {
+            filled: 0,
+            low: machinery.plans.low.start(),
+            low_given: 0,
+        });
         let mut done = 0;
         while done < samples.len() {
             let part = (samples.len() - done).min(n - run.filled);
@@ -306,7 +369,12 @@ impl PointAnalysis {
         Ok(())
     }
 
-    fn close(&mut self, point: &PointSpec, arrival: Arrival, speeds: &dyn Speeds) -> Option<Reading> {
+    fn close(
+        &mut self,
+        point: &PointSpec,
+        arrival: Arrival,
+        speeds: &dyn Speeds,
+    ) -> Option<Reading> {
         let open = self.open.take()?;
         self.last_end = Some(open.end);
         let machinery = self.machinery.as_mut()?;
@@ -325,7 +393,10 @@ impl PointAnalysis {
         doubt_if(moving, Doubt::SpeedMoving);
         doubt_if(summary.as_ref().is_some_and(Sums::is_flat), Doubt::Flat);
         let rails_hold = open.format.rails.is_some() || point.range_ms2.is_some();
-        doubt_if(rails_hold && summary.as_ref().is_some_and(Sums::is_clipped), Doubt::Clipped);
+        doubt_if(
+            rails_hold && summary.as_ref().is_some_and(Sums::is_clipped),
+            Doubt::Clipped,
+        );
         let settled = sums.velocity.count() * plans.low.factor() as u64 * 2 >= samples.max(1);
         let reading = Reading {
             start: open.start,
@@ -337,8 +408,14 @@ impl PointAnalysis {
             gaps: open.gaps,
             doubts,
             speed,
-            velocity: if settled { sums.velocity.rms().zip(sums.velocity.peak()) } else { None },
-            acceleration: summary.as_ref().and_then(|summary| Sums::acceleration(summary, self.pivot)),
+            velocity: if settled {
+                sums.velocity.rms().zip(sums.velocity.peak())
+            } else {
+                None
+            },
+            acceleration: summary
+                .as_ref()
+                .and_then(|summary| Sums::acceleration(summary, self.pivot)),
             high_band_rms: sums.high_band(plans.rate_hz),
             bands: sums.bands(&point.bands, speed),
             races: sums.races(point, speed),
@@ -355,7 +432,14 @@ impl PointAnalysis {
 impl Machinery {
     /// Everything one full frame gives.
     fn frame_done(&mut self, run: &mut Run, scratch: &mut Scratch) -> Result<(), FrameFault> {
-        let Self { plans, sums, frame, low_out, waveform, .. } = self;
+        let Self {
+            plans,
+            sums,
+            frame,
+            low_out,
+            waveform,
+            ..
+        } = self;
         low_out.clear();
         plans.frame.transform(frame, scratch)?;
         plans.frame.accumulate_psd(scratch, &mut sums.psd)?;
@@ -363,7 +447,11 @@ impl Machinery {
             plan.accumulate(scratch, envelope)?;
         }
         plans.low.push_frame(scratch, &mut run.low, low_out)?;
-        let unsettled = plans.low.settle_samples().saturating_sub(run.low_given).min(low_out.len());
+        let unsettled = plans
+            .low
+            .settle_samples()
+            .saturating_sub(run.low_given)
+            .min(low_out.len());
         run.low_given = run.low_given.saturating_add(low_out.len());
         let settled = &low_out[unsettled..];
         sums.velocity.push(settled);
@@ -392,7 +480,9 @@ impl Channel<'_> {
                 *slot = format.convert(*raw, pivot);
             }
         } else {
-            let samples = self.samples[from * self.channels + self.channel..].iter().step_by(self.channels);
+            let samples = self.samples[from * self.channels + self.channel..]
+                .iter()
+                .step_by(self.channels);
             for (slot, raw) in place.iter_mut().zip(samples) {
                 *slot = format.convert(*raw, pivot);
             }

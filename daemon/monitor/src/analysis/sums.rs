@@ -81,24 +81,42 @@ impl Sums {
 
     pub(super) fn high_band(&self, rate_hz: f64) -> Option<f64> {
         let to = HIGH_BAND_HZ.1.min(rate_hz / 2.56);
-        (self.psd.frames() > 0 && to > HIGH_BAND_HZ.0).then(|| self.psd.band_rms(HIGH_BAND_HZ.0, to))
+        (self.psd.frames() > 0 && to > HIGH_BAND_HZ.0)
+            .then(|| self.psd.band_rms(HIGH_BAND_HZ.0, to))
     }
 
     /// Values of the named bands at the speed; `None` where a band reaches above half the rate.
     pub(super) fn bands(&self, bands: &[BandPlan], speed: ShaftSpeed) -> Vec<Option<f64>> {
-        let known =
-            KnownFrequencies { shaft_hz: Some(units::rpm_to_hz(speed.rpm())), ..KnownFrequencies::default() };
+        let known = KnownFrequencies {
+            shaft_hz: Some(units::rpm_to_hz(speed.rpm())),
+            ..KnownFrequencies::default()
+        };
         let value = |band: &BandPlan| {
             let (from, to) = band.band().resolve(&known, self.psd.rate_hz() / 2.0).ok()?;
             let velocity = band.spec().quantity == Quantity::VelocityRms;
-            Some(if velocity { self.psd.velocity_band_rms(from, to) } else { self.psd.band_rms(from, to) })
+            Some(if velocity {
+                self.psd.velocity_band_rms(from, to)
+            } else {
+                self.psd.band_rms(from, to)
+            })
         };
-        bands.iter().map(|band| if self.psd.frames() > 0 { value(band) } else { None }).collect()
+        bands
+            .iter()
+            .map(|band| {
+                if self.psd.frames() > 0 {
+                    value(band)
+                } else {
+                    None
+                }
+            })
+            .collect()
     }
 
     /// Looks for the bearing's lines at the speed.
     pub(super) fn races(&self, point: &PointSpec, speed: ShaftSpeed) -> [Option<RaceResult>; 4] {
-        let (Some(envelope), Some(bearing)) = (&self.envelope, &point.bearing) else { return [None; 4] };
+        let (Some(envelope), Some(bearing)) = (&self.envelope, &point.bearing) else {
+            return [None; 4];
+        };
         let shaft_hz = units::rpm_to_hz(speed.rpm());
         if envelope.frames() == 0 || shaft_hz <= 0.0 {
             return [None; 4];
@@ -112,13 +130,15 @@ impl Sums {
             });
             let standing = family.count_above(STANDS_OUT_DB);
             Some(match family.fundamental() {
-                Some(line) if standing >= 2 && line.db >= STANDS_OUT_DB => RaceResult::Line(RaceLine {
-                    frequency_hz: line.frequency_hz,
-                    order: line.frequency_hz / shaft_hz,
-                    db: line.db,
-                    ms2: line.m_s2,
-                    harmonics: standing as u8,
-                }),
+                Some(line) if standing >= 2 && line.db >= STANDS_OUT_DB => {
+                    RaceResult::Line(RaceLine {
+                        frequency_hz: line.frequency_hz,
+                        order: line.frequency_hz / shaft_hz,
+                        db: line.db,
+                        ms2: line.m_s2,
+                        harmonics: standing as u8,
+                    })
+                }
                 _ => RaceResult::NoLine,
             })
         })
@@ -135,7 +155,8 @@ impl Sums {
             .into_iter()
             .map(|line| SpectralLine {
                 frequency_hz: line.frequency_hz,
-                velocity_rms: units::velocity_mm_s(line.amplitude, line.frequency_hz) / core::f64::consts::SQRT_2,
+                velocity_rms: units::velocity_mm_s(line.amplitude, line.frequency_hz)
+                    / core::f64::consts::SQRT_2,
             })
             .collect();
         lines.sort_by(|a, b| b.velocity_rms.total_cmp(&a.velocity_rms));

@@ -39,7 +39,9 @@ impl Account<'_> {
     }
 
     fn race(&self) -> Option<(Race, RaceLine)> {
-        let Measure::Bearing(race) = self.plan.spec().measure else { return None };
+        let Measure::Bearing(race) = self.plan.spec().measure else {
+            return None;
+        };
         self.reading.line(race).map(|line| (race, line))
     }
 
@@ -50,7 +52,12 @@ impl Account<'_> {
 
     fn measured(&self, measure: Measure, unit: &str) -> Option<Measured> {
         let value = self.reading.value(measure)?;
-        Some(Measured { measure: words::key(measure).into(), value: Some(value), unit: unit.into(), quality: Quality::Good })
+        Some(Measured {
+            measure: words::key(measure).into(),
+            value: Some(value),
+            unit: unit.into(),
+            quality: Quality::Good,
+        })
     }
 }
 
@@ -59,7 +66,10 @@ pub(super) fn value(account: &Account<'_>) -> Measured {
     let spec = account.plan.spec();
     let quality = if account.reading.doubts.has(Doubt::Clipped) {
         Quality::LowerBound
-    } else if matches!((spec.measure, account.reading.speed), (Measure::Bearing(_), ShaftSpeed::Nominal(_))) {
+    } else if matches!(
+        (spec.measure, account.reading.speed),
+        (Measure::Bearing(_), ShaftSpeed::Nominal(_))
+    ) {
         Quality::NotVerified
     } else {
         Quality::Good
@@ -75,9 +85,16 @@ pub(super) fn value(account: &Account<'_>) -> Measured {
         | Measure::HighBandRms
         | Measure::Bearing(_) => None,
     };
-    let measure =
-        band.map_or_else(|| words::key(spec.measure).into(), |band| format!("band.{}", band.spec().name));
-    Measured { measure, value: account.reading.value(spec.measure), unit: spec.quantity.unit().into(), quality }
+    let measure = band.map_or_else(
+        || words::key(spec.measure).into(),
+        |band| format!("band.{}", band.spec().name),
+    );
+    Measured {
+        measure,
+        value: account.reading.value(spec.measure),
+        unit: spec.quantity.unit().into(),
+        quality,
+    }
 }
 
 /// The lines it rests on: the bearing line, or the strongest of the velocity spectrum.
@@ -88,7 +105,8 @@ pub(super) fn lines(account: &Account<'_>) -> Vec<Line> {
     if let Some((race, line)) = account.race() {
         let (from, to) = point.envelope_hz.unwrap_or_default();
         return alloc::vec![Line {
-            label: format!("{} race rate, envelope", race.text()).replace("element race", "rolling element"),
+            label: format!("{} race rate, envelope", race.text())
+                .replace("element race", "rolling element"),
             frequency_hz: line.frequency_hz,
             order: Some(line.order),
             strength_db: Some(line.db),
@@ -101,9 +119,13 @@ pub(super) fn lines(account: &Account<'_>) -> Vec<Line> {
     let told = reading.strongest.iter().take(LINES_TOLD);
     told.map(|line| {
         let order = (shaft_hz > 0.0).then(|| line.frequency_hz / shaft_hz);
-        let whole = order.filter(|order| (order - order.round()).abs() <= WHOLE_ORDER && *order > 0.5);
+        let whole =
+            order.filter(|order| (order - order.round()).abs() <= WHOLE_ORDER && *order > 0.5);
         Line {
-            label: whole.map_or_else(|| "line".into(), |order| format!("{:.0}x shaft", order.round())),
+            label: whole.map_or_else(
+                || "line".into(),
+                |order| format!("{:.0}x shaft", order.round()),
+            ),
             frequency_hz: line.frequency_hz,
             order,
             strength_db: None,
@@ -124,12 +146,20 @@ pub(super) fn also(account: &Account<'_>) -> Vec<Zoned> {
         (Measure::Kurtosis, Quantity::Ratio),
         (Measure::AccelerationPeak, Quantity::AccelerationPeak),
     ];
-    let others = measures.into_iter().filter(|(measure, _)| *measure != account.plan.spec().measure);
+    let others = measures
+        .into_iter()
+        .filter(|(measure, _)| *measure != account.plan.spec().measure);
     others
         .filter_map(|(measure, quantity)| {
             let zoned = measure == Measure::VelocityRms;
-            let zone = account.zone().filter(|_| zoned).map(|zone| zone.letter().into());
-            Some(Zoned { value: account.measured(measure, quantity.unit())?, zone })
+            let zone = account
+                .zone()
+                .filter(|_| zoned)
+                .map(|zone| zone.letter().into());
+            Some(Zoned {
+                value: account.measured(measure, quantity.unit())?,
+                zone,
+            })
         })
         .collect()
 }
@@ -142,13 +172,18 @@ pub(super) fn against(account: &Account<'_>) -> Vec<String> {
     }
     if let Some((_, line)) = account.race() {
         if let Some(zone @ (Zone::A | Zone::B)) = account.zone() {
-            against.push(format!("velocity is in zone {}: an early stage at most", zone.letter()));
+            against.push(format!(
+                "velocity is in zone {}: an early stage at most",
+                zone.letter()
+            ));
         }
         if line.harmonics < 3 {
             against.push(format!("only {} harmonics stand out", line.harmonics));
         }
     }
-    if let (Measure::Bearing(_), ShaftSpeed::Nominal(_)) = (account.plan.spec().measure, account.reading.speed) {
+    if let (Measure::Bearing(_), ShaftSpeed::Nominal(_)) =
+        (account.plan.spec().measure, account.reading.speed)
+    {
         against.push("speed is nominal, not reported".into());
     }
     if account.reading.doubts.has(Doubt::Clipped) {
@@ -166,14 +201,38 @@ pub(super) fn text(account: &Account<'_>, since: Option<Instant>) -> String {
     let reading = account.reading;
     let asset = account.context.plan.spec();
     let began = since.map_or_else(String::new, |since| format!(" since {}", clock(since)));
-    let place = format!("{} {} {}, {}", severity_word(account.severity), asset.id, asset.name, account.point().name);
-    let at_least = if reading.doubts.has(Doubt::Clipped) { "at least " } else { "" };
+    let place = format!(
+        "{} {} {}, {}",
+        severity_word(account.severity),
+        asset.id,
+        asset.name,
+        account.point().name
+    );
+    let at_least = if reading.doubts.has(Doubt::Clipped) {
+        "at least "
+    } else {
+        ""
+    };
     let unit = spec.quantity.unit();
-    let unit = if spec.quantity == Quantity::Ratio { String::new() } else { format!(" {unit}") };
-    let said = reading.value(spec.measure).map_or_else(|| "no value".into(), two_digits);
+    let unit = if spec.quantity == Quantity::Ratio {
+        String::new()
+    } else {
+        format!(" {unit}")
+    };
+    let said = reading
+        .value(spec.measure)
+        .map_or_else(|| "no value".into(), two_digits);
     let limit = account.limit.map_or_else(String::new, |limit| {
-        let kind = if account.severity == Severity::Danger || account.change == Change::Eased { "danger" } else { "alert" };
-        let kind = if spec.limits.alert().is_none() { "danger" } else { kind };
+        let kind = if account.severity == Severity::Danger || account.change == Change::Eased {
+            "danger"
+        } else {
+            "alert"
+        };
+        let kind = if spec.limits.alert().is_none() {
+            "danger"
+        } else {
+            kind
+        };
         format!(" ({kind} {})", two_digits(limit))
     });
     let what = match account.race() {
@@ -183,19 +242,26 @@ pub(super) fn text(account: &Account<'_>, since: Option<Instant>) -> String {
             two_or_more_digits(line.frequency_hz),
             two_digits(line.ms2),
         ),
-        None => format!("{place}: {} {at_least}{said}{unit}{limit}{began}.", words::phrase(spec.measure)),
+        None => format!(
+            "{place}: {} {at_least}{said}{unit}{limit}{began}.",
+            words::phrase(spec.measure)
+        ),
     };
     let what = match account.change {
-        Change::Cleared => what.replace(" (alert", " back below (alert").replace(" (danger", " back below (danger"),
+        Change::Cleared => what
+            .replace(" (alert", " back below (alert")
+            .replace(" (danger", " back below (danger"),
         Change::Eased => what.replace(" (danger", ", eased from danger (danger"),
         Change::Raised(_) | Change::Worsened => what,
     };
     let velocity = match (spec.quantity, reading.value(Measure::VelocityRms)) {
-        (Quantity::VelocityRms | Quantity::VelocityPeak, _) | (_, None) => {
-            account.zone().map_or_else(String::new, |zone| format!("Zone {}.", zone.letter()))
-        }
+        (Quantity::VelocityRms | Quantity::VelocityPeak, _) | (_, None) => account
+            .zone()
+            .map_or_else(String::new, |zone| format!("Zone {}.", zone.letter())),
         (_, Some(velocity)) => {
-            let zone = account.zone().map_or_else(String::new, |zone| format!(", zone {}", zone.letter()));
+            let zone = account
+                .zone()
+                .map_or_else(String::new, |zone| format!(", zone {}", zone.letter()));
             format!("Velocity {} mm/s rms{zone}.", two_digits(velocity))
         }
     };
@@ -203,7 +269,11 @@ pub(super) fn text(account: &Account<'_>, since: Option<Instant>) -> String {
         ShaftSpeed::Reported(rpm) => format!("Running {rpm:.0} r/min, sensor good."),
         ShaftSpeed::Nominal(rpm) => format!("Running, {rpm:.0} r/min nominal, sensor good."),
     };
-    let speed = if reading.doubts.is_empty() { speed } else { speed.replace("sensor good", "sensor clipped") };
+    let speed = if reading.doubts.is_empty() {
+        speed
+    } else {
+        speed.replace("sensor good", "sensor clipped")
+    };
     let checks = words::checks(spec.measure, account.severity);
     let next = match account.severity {
         Severity::None => String::new(),
@@ -215,10 +285,18 @@ pub(super) fn text(account: &Account<'_>, since: Option<Instant>) -> String {
         _ => String::new(),
     };
     let whole = join(&[what.clone(), velocity.clone(), speed.clone(), next.clone()]);
-    if whole.contains(next.as_str()) { whole } else { join(&[what, velocity, speed, shorter]) }
+    if whole.contains(next.as_str()) {
+        whole
+    } else {
+        join(&[what, velocity, speed, shorter])
+    }
 }
 
 /// A frequency: whole hertz from 100 Hz on, two digits below.
 fn two_or_more_digits(hz: f64) -> String {
-    if hz >= 100.0 { format!("{hz:.0}") } else { two_digits(hz) }
+    if hz >= 100.0 {
+        format!("{hz:.0}")
+    } else {
+        two_digits(hz)
+    }
 }

@@ -27,7 +27,12 @@ impl Counter {
     /// Takes in one judged reading; `true` when the condition has now held long enough.
     ///
     /// Time is credited with the reading's own length, once, and only while readings hold in a row.
-    pub(super) fn feed(&mut self, holds: bool, reading: &Reading, persistence: Persistence) -> bool {
+    pub(super) fn feed(
+        &mut self,
+        holds: bool,
+        reading: &Reading,
+        persistence: Persistence,
+    ) -> bool {
         self.history = self.history << 1 | u64::from(holds);
         if holds {
             self.in_row = self.in_row.saturating_add(1);
@@ -68,7 +73,11 @@ impl Counter {
 }
 
 const fn window_mask(window: u16) -> u64 {
-    if window >= 64 { u64::MAX } else { (1 << window) - 1 }
+    if window >= 64 {
+        u64::MAX
+    } else {
+        (1 << window) - 1
+    }
 }
 
 #[cfg(test)]
@@ -82,7 +91,10 @@ mod tests {
 
     fn fed(persistence: Persistence, holds: &[bool]) -> (Vec<bool>, Option<SignalTime>) {
         let mut counter = Counter::default();
-        let met = holds.iter().enumerate().map(|(i, holds)| counter.feed(*holds, &reading(i as i64), persistence));
+        let met = holds
+            .iter()
+            .enumerate()
+            .map(|(i, holds)| counter.feed(*holds, &reading(i as i64), persistence));
         (met.collect(), counter.since())
     }
 
@@ -91,23 +103,41 @@ mod tests {
 
     #[test]
     fn three_readings_means_three_in_a_row() {
-        let (met, since) = fed(Persistence::Readings(3), &[true, true, false, true, true, true]);
+        let (met, since) = fed(
+            Persistence::Readings(3),
+            &[true, true, false, true, true, true],
+        );
         assert_eq!(met, [false, false, false, false, false, true]);
         assert_eq!(since, Some(reading(3).start));
     }
 
     #[test]
     fn time_is_credited_with_the_length_of_each_reading() {
-        let (met, _) = fed(Persistence::Time(Span::from_secs(25)), &[true, true, true, false, true]);
+        let (met, _) = fed(
+            Persistence::Time(Span::from_secs(25)),
+            &[true, true, true, false, true],
+        );
         assert_eq!(met, [false, false, true, false, false]);
     }
 
     #[test]
     fn three_of_five_survives_two_quiet_readings() {
-        let (met, since) = fed(Persistence::OutOf { needed: 3, window: 5 }, &[true, false, true, false, true]);
+        let (met, since) = fed(
+            Persistence::OutOf {
+                needed: 3,
+                window: 5,
+            },
+            &[true, false, true, false, true],
+        );
         assert_eq!(met, [false, false, false, false, true]);
         assert_eq!(since, Some(reading(0).start));
-        let (met, _) = fed(Persistence::OutOf { needed: 3, window: 5 }, &[true, false, false, true, false, true]);
+        let (met, _) = fed(
+            Persistence::OutOf {
+                needed: 3,
+                window: 5,
+            },
+            &[true, false, false, true, false, true],
+        );
         assert!(met.iter().all(|met| !met));
     }
 }

@@ -9,8 +9,8 @@ use alloc::{
 use humward_wire::{
     id::Id,
     out::{
-        ADVISORY, Alarm, Event, Evidence, Finding, Header, Instant, Limit, MAX_EVENT, MAX_EVIDENCE, Measured, Quality,
-        RunState, Running, Severity, Standing, State, Transition,
+        ADVISORY, Alarm, Event, Evidence, Finding, Header, Instant, Limit, MAX_EVENT, MAX_EVIDENCE,
+        Measured, Quality, RunState, Running, Severity, Standing, State, Transition,
     },
 };
 
@@ -25,7 +25,6 @@ use super::{
 use crate::{
     analysis::{Taken, Traces},
     input::{GapCause, Identity},
-
     reading::{Reading, ShaftSpeed},
 };
 
@@ -91,15 +90,34 @@ pub(super) fn running(judge: &AssetJudge, speed: Option<ShaftSpeed>) -> Running 
         Operating::Running => RunState::Running,
     };
     let (rpm, rpm_quality) = speed.map_or((None, Quality::Missing), told_speed);
-    Running { state, state_code: state.code(), operating: None, rpm, rpm_quality }
+    Running {
+        state,
+        state_code: state.code(),
+        operating: None,
+        rpm,
+        rpm_quality,
+    }
 }
 
 fn header(context: Context<'_>, at: Instant) -> Header {
     let Context { identity, plan, .. } = context;
-    Header::new::<Event>(identity.gateway.clone(), identity.epoch, identity.site.clone(), Some(plan.id().clone()), at)
+    Header::new::<Event>(
+        identity.gateway.clone(),
+        identity.epoch,
+        identity.site.clone(),
+        Some(plan.id().clone()),
+        at,
+    )
 }
 
-fn event(context: Context<'_>, n: u64, id: Id, at: Instant, transition: Transition, finding: Finding) -> Event {
+fn event(
+    context: Context<'_>,
+    n: u64,
+    id: Id,
+    at: Instant,
+    transition: Transition,
+    finding: Finding,
+) -> Event {
     let event = Event {
         header: header(context, at),
         n,
@@ -114,7 +132,12 @@ fn event(context: Context<'_>, n: u64, id: Id, at: Instant, transition: Transiti
 }
 
 /// A finding with nothing in it but its standing and the machine's state.
-fn bare(judge: &AssetJudge, standing: Standing, speed: Option<ShaftSpeed>, text: String) -> Finding {
+fn bare(
+    judge: &AssetJudge,
+    standing: Standing,
+    speed: Option<ShaftSpeed>,
+    text: String,
+) -> Finding {
     Finding {
         text,
         occurrence: None,
@@ -162,7 +185,14 @@ pub(super) fn watch_event(
         (Change::Eased, _) | (_, Severity::Danger) => spec.limits.danger().or(spec.limits.alert()),
         _ => spec.limits.alert().or(spec.limits.danger()),
     };
-    let account = Account { context, plan, reading, limit: limit.map(|limit| limit.value()), change, severity };
+    let account = Account {
+        context,
+        plan,
+        reading,
+        limit: limit.map(|limit| limit.value()),
+        change,
+        severity,
+    };
     let since = occurrence.map(|open| Instant(open.since.ns()));
     let finding = Finding {
         text: account::text(&account, since),
@@ -170,7 +200,10 @@ pub(super) fn watch_event(
         point: Some(context.plan.spec().points[spec.point].id().clone()),
         watch: Some(plan.full_name().into()),
         value: Some(account::value(&account)),
-        limit: limit.map(|limit| Limit { value: limit.value(), unit: spec.quantity.unit().into() }),
+        limit: limit.map(|limit| Limit {
+            value: limit.value(),
+            unit: spec.quantity.unit().into(),
+        }),
         since,
         readings: state.readings(change),
         lines: account::lines(&account),
@@ -178,20 +211,40 @@ pub(super) fn watch_event(
         against: account::against(&account),
         checks: match severity {
             Severity::None => Vec::new(),
-            Severity::Alert | Severity::Danger => {
-                words::checks(spec.measure, severity).iter().map(ToString::to_string).collect()
-            }
+            Severity::Alert | Severity::Danger => words::checks(spec.measure, severity)
+                .iter()
+                .map(ToString::to_string)
+                .collect(),
         },
-        ..bare(judge, Standing::new(kind, severity), Some(reading.speed), String::new())
+        ..bare(
+            judge,
+            Standing::new(kind, severity),
+            Some(reading.speed),
+            String::new(),
+        )
     };
-    event(context, judge.n, id, Instant(reading.end.ns()), transition, finding)
+    event(
+        context,
+        judge.n,
+        id,
+        Instant(reading.end.ns()),
+        transition,
+        finding,
+    )
 }
 
 /// The retained state that goes with an event.
 pub(super) fn alarm_of(event: &Event) -> Alarm {
     let mut header = event.header.clone();
     header.schema = <Alarm as humward_wire::out::Message>::SCHEMA.into();
-    Alarm { header, n: event.n, event: event.id.clone(), finding: event.finding.clone() }.fit(MAX_EVENT).0
+    Alarm {
+        header,
+        n: event.n,
+        event: event.id.clone(),
+        finding: event.finding.clone(),
+    }
+    .fit(MAX_EVENT)
+    .0
 }
 
 /// The event of a point's instrument watch.
@@ -205,21 +258,39 @@ pub(super) fn sensor_event(
     let plan = context.plan.spec().points[point].spec();
     let open = judge.sensors[point].open();
     let since = open.map(|open| Instant(open.since.ns()));
-    let place = format!("{} {}, {}", context.plan.id(), context.plan.spec().name, plan.name);
+    let place = format!(
+        "{} {}, {}",
+        context.plan.id(),
+        context.plan.spec().name,
+        plan.name
+    );
     let (transition, standing, text, checks) = match change {
         SensorChange::Raised(cause) => {
-            let began = since.map_or_else(String::new, |since| format!(" since {}", sentence::clock(since)));
+            let began = since.map_or_else(String::new, |since| {
+                format!(" since {}", sentence::clock(since))
+            });
             let what = format!("ALERT {place}: its sensor {}{began}.", words::cause(cause));
             let checks = words::sensor_checks(cause);
-            let unwatched = "The machine is not judged at this point: silence is not health.".to_string();
+            let unwatched =
+                "The machine is not judged at this point: silence is not health.".to_string();
             let next = format!("Next: {}.", checks.join(", "));
             let standing = Standing::new(State::Unack, Severity::Alert);
-            (Transition::Raised, standing, sentence::join(&[what, unwatched, next]), checks)
+            (
+                Transition::Raised,
+                standing,
+                sentence::join(&[what, unwatched, next]),
+                checks,
+            )
         }
         SensorChange::Cleared => {
             let what = format!("CLEARED {place}: its sensor is good again.");
             let standing = Standing::new(State::Norm, Severity::None);
-            (Transition::Cleared, standing, sentence::join(&[what]), [].as_slice())
+            (
+                Transition::Cleared,
+                standing,
+                sentence::join(&[what]),
+                [].as_slice(),
+            )
         }
     };
     let finding = Finding {
@@ -230,13 +301,34 @@ pub(super) fn sensor_event(
         checks: checks.iter().map(ToString::to_string).collect(),
         ..bare(judge, standing, None, text)
     };
-    event(context, judge.n, id, Instant(context.arrival.ns()), transition, finding)
+    event(
+        context,
+        judge.n,
+        id,
+        Instant(context.arrival.ns()),
+        transition,
+        finding,
+    )
 }
 
 /// The event of an asset whose judging paused or goes on.
-pub(super) fn asset_event(judge: &AssetJudge, context: Context<'_>, change: AssetChange, id: Id) -> Event {
-    let open = judge.watches.iter().filter(|watch| watch.occurrence().is_some()).count();
-    let worst = judge.watches.iter().map(super::watch::WatchState::severity).max().unwrap_or(Severity::None);
+pub(super) fn asset_event(
+    judge: &AssetJudge,
+    context: Context<'_>,
+    change: AssetChange,
+    id: Id,
+) -> Event {
+    let open = judge
+        .watches
+        .iter()
+        .filter(|watch| watch.occurrence().is_some())
+        .count();
+    let worst = judge
+        .watches
+        .iter()
+        .map(super::watch::WatchState::severity)
+        .max()
+        .unwrap_or(Severity::None);
     let place = format!("{} {}", context.plan.id(), context.plan.spec().name);
     let (transition, state, text) = match change {
         AssetChange::Suspended => (
@@ -250,8 +342,16 @@ pub(super) fn asset_event(judge: &AssetJudge, context: Context<'_>, change: Asse
             format!("RESUMED {place}: it runs again; {open} held alarm(s) go on."),
         ),
     };
-    let at = judge.running.since().map_or(context.arrival.ns(), |since| since.ns());
-    let finding = bare(judge, Standing::new(state, worst), None, sentence::join(&[text]));
+    let at = judge
+        .running
+        .since()
+        .map_or(context.arrival.ns(), |since| since.ns());
+    let finding = bare(
+        judge,
+        Standing::new(state, worst),
+        None,
+        sentence::join(&[text]),
+    );
     event(context, judge.n, id, Instant(at), transition, finding)
 }
 
@@ -279,23 +379,39 @@ pub(super) fn held_alarm(
         context.plan.spec().points[plan.spec().point].spec().name,
         sentence::clock(since)
     );
-    let value = reading.and_then(|reading| reading.value(plan.spec().measure)).map(|value| Measured {
-        measure: words::key(plan.spec().measure).into(),
-        value: Some(value),
-        unit: plan.spec().quantity.unit().into(),
-        quality: Quality::Stale,
-    });
+    let value = reading
+        .and_then(|reading| reading.value(plan.spec().measure))
+        .map(|value| Measured {
+            measure: words::key(plan.spec().measure).into(),
+            value: Some(value),
+            unit: plan.spec().quantity.unit().into(),
+            quality: Quality::Stale,
+        });
     let finding = Finding {
         occurrence: occurrence.id.clone(),
         point: Some(context.plan.spec().points[plan.spec().point].id().clone()),
         watch: Some(plan.full_name().into()),
         value,
         since: Some(since),
-        ..bare(judge, Standing::new(kind, state.severity()), None, sentence::join(&[text]))
+        ..bare(
+            judge,
+            Standing::new(kind, state.severity()),
+            None,
+            sentence::join(&[text]),
+        )
     };
     let mut header = header(context, Instant(context.arrival.ns()));
     header.schema = <Alarm as humward_wire::out::Message>::SCHEMA.into();
-    Some(Alarm { header, n: judge.n, event: id, finding }.fit(MAX_EVENT).0)
+    Some(
+        Alarm {
+            header,
+            n: judge.n,
+            event: id,
+            finding,
+        }
+        .fit(MAX_EVENT)
+        .0,
+    )
 }
 
 /// The event of an occurrence whose watch or asset is no longer in the plan.
@@ -307,17 +423,37 @@ pub(super) fn withdrawn_event(
     id: Id,
 ) -> Event {
     let place = format!("{} {}", context.plan.id(), context.plan.spec().name);
-    let text = sentence::join(&[format!("WITHDRAWN {place}: {watch} is no longer in the configuration.")]);
+    let text = sentence::join(&[format!(
+        "WITHDRAWN {place}: {watch} is no longer in the configuration."
+    )]);
     let finding = Finding {
         occurrence,
         watch: Some(watch.into()),
-        ..bare(judge, Standing::new(State::Norm, Severity::None), None, text)
+        ..bare(
+            judge,
+            Standing::new(State::Norm, Severity::None),
+            None,
+            text,
+        )
     };
-    event(context, judge.n, id, Instant(context.arrival.ns()), Transition::Withdrawn, finding)
+    event(
+        context,
+        judge.n,
+        id,
+        Instant(context.arrival.ns()),
+        Transition::Withdrawn,
+        finding,
+    )
 }
 
 /// Spectra and waveform that go with an event.
-pub(super) fn evidence(context: Context<'_>, index: usize, reading: &Reading, event: Id, traces: Traces) -> Evidence {
+pub(super) fn evidence(
+    context: Context<'_>,
+    index: usize,
+    reading: &Reading,
+    event: Id,
+    traces: Traces,
+) -> Evidence {
     let plan = &context.plan.spec().watches[index];
     let mut header = header(context, Instant(reading.end.ns()));
     header.schema = <Evidence as humward_wire::out::Message>::SCHEMA.into();

@@ -74,8 +74,13 @@ impl SpeedTrack {
         }
         let mean = within.iter().map(|(_, rpm)| rpm).sum::<f64>() / within.len() as f64;
         let all = within.iter().map(|(_, rpm)| *rpm).chain(before);
-        let (low, high) = all.fold((f64::INFINITY, 0.0f64), |(low, high), rpm| (low.min(rpm), high.max(rpm)));
-        (ShaftSpeed::Reported(mean), high - low > SPEED_MOVING_SHARE * mean)
+        let (low, high) = all.fold((f64::INFINITY, 0.0f64), |(low, high), rpm| {
+            (low.min(rpm), high.max(rpm))
+        });
+        (
+            ShaftSpeed::Reported(mean),
+            high - low > SPEED_MOVING_SHARE * mean,
+        )
     }
 }
 
@@ -104,14 +109,27 @@ impl RunningState {
 
     /// A speed was reported; `true` when the state changed by it.
     pub(super) fn by_speed(&mut self, rule: &RunningRule, at: SignalTime, rpm: f64) -> bool {
-        self.turn(if rpm >= rule.from_rpm && rpm > 0.0 { Operating::Running } else { Operating::Stopped }, at)
+        self.turn(
+            if rpm >= rule.from_rpm && rpm > 0.0 {
+                Operating::Running
+            } else {
+                Operating::Stopped
+            },
+            at,
+        )
     }
 
     /// A level was read and no fresh speed is known, mm/s rms; `true` when the state changed by it.
-    pub(super) fn by_level(&mut self, rule: &RunningRule, at: SignalTime, velocity_rms: f64) -> bool {
+    pub(super) fn by_level(
+        &mut self,
+        rule: &RunningRule,
+        at: SignalTime,
+        velocity_rms: f64,
+    ) -> bool {
         if velocity_rms >= rule.from_mm_s {
             self.turn(Operating::Running, at)
-        } else if velocity_rms < STOPPED_SHARE * rule.from_mm_s || self.state == Operating::Unknown {
+        } else if velocity_rms < STOPPED_SHARE * rule.from_mm_s || self.state == Operating::Unknown
+        {
             self.turn(Operating::Stopped, at)
         } else {
             false
@@ -136,7 +154,11 @@ mod tests {
         time::{SignalTime, Span},
     };
 
-    const RULE: RunningRule = RunningRule { from_rpm: 300.0, from_mm_s: 1.0, speed_valid: Span::from_secs(60) };
+    const RULE: RunningRule = RunningRule {
+        from_rpm: 300.0,
+        from_mm_s: 1.0,
+        speed_valid: Span::from_secs(60),
+    };
 
     fn at(s: i64) -> SignalTime {
         SignalTime::from_ns(s * 1_000_000_000)

@@ -62,7 +62,13 @@ pub(super) struct SensorState {
 impl SensorState {
     /// A sensor that has had its chance since `from`.
     pub(super) const fn new(from: Arrival) -> Self {
-        Self { usable: from, bad: None, why_not_usable: Cause::Silent, good_since: None, open: None }
+        Self {
+            usable: from,
+            bad: None,
+            why_not_usable: Cause::Silent,
+            good_since: None,
+            open: None,
+        }
     }
 
     /// The open occurrence.
@@ -99,7 +105,10 @@ impl SensorState {
     pub(super) fn reading(&mut self, reading: &Reading, after: Span) -> Option<SensorChange> {
         let now = reading.closed;
         // A reading that is short because the stream has only begun or has a known hole is not the sensor's fault.
-        let blame = reading.doubts.iter().find(|doubt| doubt.is_instrument() && *doubt != Doubt::Short);
+        let blame = reading
+            .doubts
+            .iter()
+            .find(|doubt| doubt.is_instrument() && *doubt != Doubt::Short);
         match blame {
             Some(doubt) => {
                 self.good_since = None;
@@ -111,7 +120,11 @@ impl SensorState {
             None => {
                 self.bad = None;
                 let since = *self.good_since.get_or_insert(now);
-                if self.open.is_some() && now.since(since) >= after { Some(SensorChange::Cleared) } else { None }
+                if self.open.is_some() && now.since(since) >= after {
+                    Some(SensorChange::Cleared)
+                } else {
+                    None
+                }
             }
         }
     }
@@ -122,7 +135,10 @@ impl SensorState {
             return None;
         }
         let silent = self.usable.plus(after);
-        Some(self.bad.map_or(silent, |(since, _)| silent.min(since.plus(after))))
+        Some(
+            self.bad
+                .map_or(silent, |(since, _)| silent.min(since.plus(after))),
+        )
     }
 
     /// Opens the alarm that has become due.
@@ -132,7 +148,11 @@ impl SensorState {
             _ => (self.usable, self.why_not_usable),
         };
         self.good_since = None;
-        self.open = Some(SensorOccurrence { id: None, since, cause });
+        self.open = Some(SensorOccurrence {
+            id: None,
+            since,
+            cause,
+        });
         SensorChange::Raised(cause)
     }
 

@@ -29,7 +29,8 @@ pub(super) fn two_digits(value: f64) -> String {
 /// The time of day in UTC to the minute.
 pub(super) fn clock(instant: Instant) -> String {
     let text = format!("{instant}");
-    text.get(11..16).map_or(text.clone(), |clock| format!("{clock} UTC"))
+    text.get(11..16)
+        .map_or(text.clone(), |clock| format!("{clock} UTC"))
 }
 
 /// Joins parts with spaces and ends with the standing words; parts that no longer fit are left out from the end.

@@ -43,7 +43,9 @@ impl JudgedShare {
         let newest = self.hour?;
         // The oldest hour is only partly in the window: it is left out, with its time.
         let hours: i64 = (HOURS as i64 - 1).min(newest - self.first?.ns().div_euclid(HOUR_NS));
-        let judged: i64 = (0..=hours).map(|ago| self.judged[place(newest - ago)]).sum();
+        let judged: i64 = (0..=hours)
+            .map(|ago| self.judged[place(newest - ago)])
+            .sum();
         let into_hour = self.last?.ns() - newest * HOUR_NS;
         let before_first = if hours == newest - self.first?.ns().div_euclid(HOUR_NS) {
             self.first?.ns().rem_euclid(HOUR_NS)
@@ -69,7 +71,11 @@ mod tests {
         let mut share = JudgedShare::default();
         let ten = Span::from_secs(10);
         for k in 1..=30 * 360 {
-            share.reading(SignalTime::from_ns(7 * HOUR_NS + 123 * SECOND + k * 10 * SECOND), ten, k % 2 == 0);
+            share.reading(
+                SignalTime::from_ns(7 * HOUR_NS + 123 * SECOND + k * 10 * SECOND),
+                ten,
+                k % 2 == 0,
+            );
             if k == 300 {
                 assert_eq!(share.share(1), None, "less than an hour is no share");
             }

@@ -3,8 +3,8 @@
 use alloc::{string::String, vec::Vec};
 
 use humward_wire::out::{
-    Header, Instant, LastRunning, Loss, MAX_STATUS, Measured, Open, PointStatus, Quality, Severity, Standing, State,
-    Status,
+    Header, Instant, LastRunning, Loss, MAX_STATUS, Measured, Open, PointStatus, Quality, Severity,
+    Standing, State, Status,
 };
 
 use super::{
@@ -23,14 +23,27 @@ const STALE_READINGS: i64 = 3;
 
 /// Makes the status of an asset.
 pub(super) fn status(judge: &AssetJudge, context: Context<'_>) -> Status {
-    let Context { identity, plan, arrival } = context;
+    let Context {
+        identity,
+        plan,
+        arrival,
+    } = context;
     let spec = plan.spec();
     let at = Instant(arrival.ns());
-    let valid_for = spec.status_every.plus(spec.reading_every.times(STALE_READINGS));
+    let valid_for = spec
+        .status_every
+        .plus(spec.reading_every.times(STALE_READINGS));
     let open = open(judge, context);
     let runs = judge.running.state() == Operating::Running;
-    let newest = judge.latest.iter().flatten().max_by_key(|reading| reading.end);
-    let losses = judge.losses.iter().map(|(reason, count)| Loss { reason: reason.clone(), count: *count });
+    let newest = judge
+        .latest
+        .iter()
+        .flatten()
+        .max_by_key(|reading| reading.end);
+    let losses = judge.losses.iter().map(|(reason, count)| Loss {
+        reason: reason.clone(),
+        count: *count,
+    });
     let status = Status {
         header: Header::new::<Status>(
             identity.gateway.clone(),
@@ -45,9 +58,15 @@ pub(super) fn status(judge: &AssetJudge, context: Context<'_>) -> Status {
         open_count: u32::try_from(open.len()).unwrap_or(u32::MAX),
         open,
         running: running(judge, newest.map(|reading| reading.speed)),
-        last_running: if runs { None } else { last_running(judge, context) },
+        last_running: if runs {
+            None
+        } else {
+            last_running(judge, context)
+        },
         judged_share_24h: judge.share.share(spec.points.len()),
-        points: (0..spec.points.len()).map(|point| point_status(judge, context, point)).collect(),
+        points: (0..spec.points.len())
+            .map(|point| point_status(judge, context, point))
+            .collect(),
         stale: stale(judge, context),
         losses: losses.collect(),
         truncated: false,
@@ -62,24 +81,32 @@ fn open(judge: &AssetJudge, context: Context<'_>) -> Vec<Open> {
         Judging::On => State::Unack,
         Judging::Suspended | Judging::Resuming(_) => State::Dsupr,
     };
-    let machine = judge.watches.iter().zip(&context.plan.spec().watches).filter_map(|(watch, plan)| {
-        let open = watch.occurrence()?;
-        Some(Open {
-            occurrence: open.id.clone()?,
-            watch: plan.full_name().into(),
-            standing: Standing::new(state, watch.severity()),
-            since: Instant(open.since.ns()),
-        })
-    });
-    let sensors = judge.sensors.iter().zip(&context.plan.spec().points).filter_map(|(sensor, point)| {
-        let open = sensor.open()?;
-        Some(Open {
-            occurrence: open.id.clone()?,
-            watch: sensor_watch(point.id()),
-            standing: Standing::new(State::Unack, Severity::Alert),
-            since: Instant(open.since.ns()),
-        })
-    });
+    let machine = judge
+        .watches
+        .iter()
+        .zip(&context.plan.spec().watches)
+        .filter_map(|(watch, plan)| {
+            let open = watch.occurrence()?;
+            Some(Open {
+                occurrence: open.id.clone()?,
+                watch: plan.full_name().into(),
+                standing: Standing::new(state, watch.severity()),
+                since: Instant(open.since.ns()),
+            })
+        });
+    let sensors = judge
+        .sensors
+        .iter()
+        .zip(&context.plan.spec().points)
+        .filter_map(|(sensor, point)| {
+            let open = sensor.open()?;
+            Some(Open {
+                occurrence: open.id.clone()?,
+                watch: sensor_watch(point.id()),
+                standing: Standing::new(State::Unack, Severity::Alert),
+                since: Instant(open.since.ns()),
+            })
+        });
     let mut all: Vec<Open> = machine.chain(sensors).collect();
     all.sort_by(|a, b| {
         (b.standing.severity(), a.since, &a.watch).cmp(&(a.standing.severity(), b.since, &b.watch))
@@ -122,7 +149,12 @@ fn point_status(judge: &AssetJudge, context: Context<'_>, point: usize) -> Point
 
 /// Whole seconds since a reading closed.
 fn age_s(context: Context<'_>, reading: &Reading) -> u32 {
-    let age = context.arrival.ns().saturating_sub(reading.closed.ns()).max(0) / 1_000_000_000;
+    let age = context
+        .arrival
+        .ns()
+        .saturating_sub(reading.closed.ns())
+        .max(0)
+        / 1_000_000_000;
     u32::try_from(age).unwrap_or(u32::MAX)
 }
 
@@ -136,7 +168,10 @@ fn values(reading: &Reading, quality: Quality, point: Option<&str>) -> Vec<Measu
             db(a).total_cmp(&db(b))
         })
         .map(|race| (Measure::Bearing(race), Quantity::Decibel));
-    let told = [(Measure::VelocityRms, Quantity::VelocityRms), (Measure::HighBandRms, Quantity::AccelerationRms)];
+    let told = [
+        (Measure::VelocityRms, Quantity::VelocityRms),
+        (Measure::HighBandRms, Quantity::AccelerationRms),
+    ];
     told.into_iter()
         .chain(strongest)
         .map(|(measure, quantity)| {
@@ -146,19 +181,33 @@ fn values(reading: &Reading, quality: Quality, point: Option<&str>) -> Vec<Measu
                 measure: point.map_or_else(|| key.into(), |point| alloc::format!("{key}.{point}")),
                 value,
                 unit: quantity.unit().into(),
-                quality: if value.is_none() { Quality::Missing } else { quality },
+                quality: if value.is_none() {
+                    Quality::Missing
+                } else {
+                    quality
+                },
             }
         })
         .collect()
 }
 
 fn last_running(judge: &AssetJudge, context: Context<'_>) -> Option<LastRunning> {
-    let newest = judge.last_running.iter().flatten().max_by_key(|reading| reading.end)?;
+    let newest = judge
+        .last_running
+        .iter()
+        .flatten()
+        .max_by_key(|reading| reading.end)?;
     let points = judge.last_running.iter().zip(&context.plan.spec().points);
     let values = points.filter_map(|(reading, point)| {
-        values(reading.as_ref()?, Quality::Stale, Some(point.id().as_str())).into_iter().next()
+        values(reading.as_ref()?, Quality::Stale, Some(point.id().as_str()))
+            .into_iter()
+            .next()
     });
-    Some(LastRunning { at: Instant(newest.end.ns()), rpm: told_speed(newest.speed).0, values: values.collect() })
+    Some(LastRunning {
+        at: Instant(newest.end.ns()),
+        rpm: told_speed(newest.speed).0,
+        values: values.collect(),
+    })
 }
 
 /// Watches whose point has had no fresh reading.

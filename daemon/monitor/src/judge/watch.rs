@@ -113,23 +113,35 @@ impl WatchState {
             return None;
         }
         let counts = Self::counts(plan, reading);
-        let over = |limit: Option<Limit>| counts && limit.is_some_and(|limit| value >= limit.value());
+        let over =
+            |limit: Option<Limit>| counts && limit.is_some_and(|limit| value >= limit.value());
         let (over_alert, over_danger) = (over(spec.limits.alert()), over(spec.limits.danger()));
         if lower_bound {
-            return over_danger.then(|| self.rise(plan, reading, true, true)).flatten();
+            return over_danger
+                .then(|| self.rise(plan, reading, true, true))
+                .flatten();
         }
-        self.rise(plan, reading, over_alert, over_danger).or_else(|| self.fall(plan, reading, value, counts))
+        self.rise(plan, reading, over_alert, over_danger)
+            .or_else(|| self.fall(plan, reading, value, counts))
     }
 
     /// Whether the value carries weight: a bearing line below its least strength does not.
     fn counts(plan: &WatchPlan, reading: &Reading) -> bool {
         match (plan.spec().measure, plan.spec().at_least_ms2) {
-            (Measure::Bearing(race), Some(least)) => reading.line(race).is_some_and(|line| line.ms2 >= least),
+            (Measure::Bearing(race), Some(least)) => {
+                reading.line(race).is_some_and(|line| line.ms2 >= least)
+            }
             _ => true,
         }
     }
 
-    fn rise(&mut self, plan: &WatchPlan, reading: &Reading, over_alert: bool, over_danger: bool) -> Option<Change> {
+    fn rise(
+        &mut self,
+        plan: &WatchPlan,
+        reading: &Reading,
+        over_alert: bool,
+        over_danger: bool,
+    ) -> Option<Change> {
         let spec = plan.spec();
         let alert_met = self.alert.feed(over_alert, reading, spec.alert_after);
         let danger_met = self.danger.feed(over_danger, reading, spec.danger_after);
@@ -143,7 +155,11 @@ impl WatchState {
         if target <= self.severity {
             return None;
         }
-        let change = if self.severity == Severity::None { Change::Raised(target) } else { Change::Worsened };
+        let change = if self.severity == Severity::None {
+            Change::Raised(target)
+        } else {
+            Change::Worsened
+        };
         self.severity = target;
         self.ease.reset();
         self.clear.reset();
@@ -157,7 +173,13 @@ impl WatchState {
         Some(change)
     }
 
-    fn fall(&mut self, plan: &WatchPlan, reading: &Reading, value: f64, counts: bool) -> Option<Change> {
+    fn fall(
+        &mut self,
+        plan: &WatchPlan,
+        reading: &Reading,
+        value: f64,
+        counts: bool,
+    ) -> Option<Change> {
         if self.severity == Severity::None {
             return None;
         }
@@ -186,13 +208,22 @@ impl WatchState {
 
     /// Takes out the occurrence a [`Change::Cleared`] has closed.
     pub(super) fn take_closed(&mut self) -> Option<Occurrence> {
-        if self.severity == Severity::None { self.occurrence.take() } else { None }
+        if self.severity == Severity::None {
+            self.occurrence.take()
+        } else {
+            None
+        }
     }
 
     /// A bearing line that sinks in a rising floor is not back: the high band must be back, too.
     fn high_band_back(&self, measure: Measure, reading: &Reading) -> bool {
-        let Measure::Bearing(_) = measure else { return true };
-        match (self.occurrence.as_ref().and_then(|o| o.high_band_at_raise), reading.high_band_rms) {
+        let Measure::Bearing(_) = measure else {
+            return true;
+        };
+        match (
+            self.occurrence.as_ref().and_then(|o| o.high_band_at_raise),
+            reading.high_band_rms,
+        ) {
             (Some(at_raise), Some(now)) => now <= HIGH_BAND_BACK * at_raise,
             _ => true,
         }

@@ -104,13 +104,24 @@ pub(super) const fn cause(cause: Cause) -> &'static str {
 /// What to check at a sensor.
 pub(super) const fn sensor_checks(cause: Cause) -> &'static [&'static str] {
     match cause {
-        Cause::Silent => &["check power and cable of the sensor", "check the radio or network path"],
-        Cause::Refused(_) | Cause::Late | Cause::Uncalibrated | Cause::NoChannel | Cause::RateUnusable => {
+        Cause::Silent => &[
+            "check power and cable of the sensor",
+            "check the radio or network path",
+        ],
+        Cause::Refused(_)
+        | Cause::Late
+        | Cause::Uncalibrated
+        | Cause::NoChannel
+        | Cause::RateUnusable => {
             &["compare the sensor's settings with its point in the configuration"]
         }
-        Cause::Doubtful(crate::reading::Doubt::Clipped) => {
-            &["check the mounting", "lower the gain or fit a less sensitive sensor"]
-        }
-        Cause::Doubtful(_) => &["check cable and connector", "check that the sensor is fixed to the housing"],
+        Cause::Doubtful(crate::reading::Doubt::Clipped) => &[
+            "check the mounting",
+            "lower the gain or fit a less sensitive sensor",
+        ],
+        Cause::Doubtful(_) => &[
+            "check cable and connector",
+            "check that the sensor is fixed to the housing",
+        ],
     }
 }
