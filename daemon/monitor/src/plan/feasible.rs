@@ -225,9 +225,10 @@ fn watch_faults(
             key,
             read: format!("{limit}"),
             allowed: format!(
-                "at least {:.3} {}, {NOISE_MARGIN} x the {noise:.3} that the sensor's own noise reads",
+                "at least {:.3} {}, {NOISE_MARGIN} x the {noise:.3} that the sensor's own noise reads (noise_ug_rthz = {})",
                 NOISE_MARGIN * noise,
                 watch.spec().quantity.unit(),
+                point.noise_ug_rthz.unwrap_or_default(),
             ),
         });
     }

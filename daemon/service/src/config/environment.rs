@@ -18,8 +18,14 @@ use super::tables::SITE;
 /// The beginning of every variable of ours.
 pub const PREFIX: &str = "HUMWARD_";
 
-/// Variables with our prefix that are not configuration: the log filter, and two that only tests read.
-pub const NOT_CONFIGURATION: [&str; 3] = ["HUMWARD_LOG", "HUMWARD_RECORDINGS", "HUMWARD_BLESS"];
+/// Variables with our prefix that are not configuration: the log filter, and those only test runs read.
+pub const NOT_CONFIGURATION: [&str; 5] = [
+    "HUMWARD_LOG",
+    "HUMWARD_RECORDINGS",
+    "HUMWARD_BLESS",
+    "HUMWARD_LONG",
+    "HUMWARD_NOT_RUN",
+];
 
 /// Keeps those of `variables` that are ours in `sources`, in name order.
 pub(crate) fn keep(variables: &[(String, String)], sources: &mut Sources) {

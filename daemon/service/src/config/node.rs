@@ -117,6 +117,15 @@ impl Node {
         self.replace_places(Place::BuiltIn);
     }
 
+    /// Whether it, or anything below it, was found faulty.
+    pub(crate) fn faulty_within(&self) -> bool {
+        if let Value::Table(table) = &self.value {
+            table.entries.iter().any(|entry| entry.node.faulty_within())
+        } else {
+            matches!(self.value, Value::Faulty) || self.value.list().iter().any(Self::faulty_within)
+        }
+    }
+
     /// The tree of a parsed document, whose places are in file `file`.
     pub(crate) fn of_document(document: &Spanned<DeTable<'_>>, file: usize) -> Self {
         let span = document.span();

@@ -54,6 +54,11 @@ impl<'t> View<'t> {
         faulty_keys(self.table()).next().is_some()
     }
 
+    /// Whether anything in the value of this key, at any depth, was found faulty.
+    pub(crate) fn faulty_within(&self, key: &str) -> bool {
+        self.table().get(key).is_some_and(Node::faulty_within)
+    }
+
     /// Whether the value of this key was found faulty.
     pub(crate) fn is_faulty(&self, key: &str) -> bool {
         faulty_keys(self.table()).any(|faulty| faulty == key)

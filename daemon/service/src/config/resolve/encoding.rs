@@ -109,7 +109,7 @@ fn json(view: View<'_>, path: &str, gather: &mut Gather<'_>) -> Option<JsonMap> 
             .whole("channels")
             .and_then(|channels| u16::try_from(channels).ok()),
     };
-    if map.faulty() || fixed.faulty() || !map.given("samples") {
+    if view.faulty() || map.faulty() || fixed.faulty() || !map.given("samples") {
         return None;
     }
     match JsonMap::new(&pointers, values, time_unit(map)?) {

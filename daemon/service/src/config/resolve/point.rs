@@ -88,8 +88,10 @@ pub(crate) fn read<'t>(
             .or(usual_envelope),
         bands,
     };
+    let below = ["bearing", "encoding", "band"];
+    let sound = !view.faulty() && !below.iter().any(|key| view.faulty_within(key));
     match PointPlan::new(spec) {
-        Ok(plan) if gather.faults.len() == before && !view.faulty() => made.plan = Some(plan),
+        Ok(plan) if gather.faults.len() == before && sound => made.plan = Some(plan),
         Ok(_) => {}
         Err(faults) => tell(view, path, faults, gather),
     }

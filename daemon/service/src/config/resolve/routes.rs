@@ -163,7 +163,7 @@ fn usable(topics: &Topics, topic: &str, place: Place, key: &str, gather: &mut Ga
     let allowed = if let Err(fault) = check_filter(topic) {
         Some(fault.to_string())
     } else if topic.contains(['+', '#']) {
-        Some("one topic, without + and #: a point has one stream of blocks".to_owned())
+        Some("one topic, without + and #".to_owned())
     } else if topic.starts_with('$') {
         Some("a topic that does not begin with $; brokers keep those for themselves".to_owned())
     } else if topics.is_outbound(topic) {
