@@ -1,0 +1,100 @@
+//! Mosquitto of the test's own, on a free port of 127.0.0.1.
+
+use std::fs::{self, File};
+use std::net::{TcpListener, TcpStream};
+use std::path::{Path, PathBuf};
+use std::process::{Child, Command, Stdio};
+
+use crate::{SOON, folder, wait};
+
+/// A running broker; ended when dropped.
+#[derive(Debug)]
+pub struct Broker {
+    folder: PathBuf,
+    port: u16,
+    child: Option<Child>,
+}
+
+impl Broker {
+    /// Starts one that lets everybody in.
+    pub fn start() -> Self {
+        Self::with("")
+    }
+
+    /// Starts one with further lines in its configuration.
+    pub fn with(lines: &str) -> Self {
+        let folder = folder("broker");
+        // The port may be taken between here and the broker's start; then the wait below says so.
+        let port = TcpListener::bind("127.0.0.1:0")
+            .and_then(|listener| listener.local_addr())
+            .expect("127.0.0.1 has a free port")
+            .port();
+        let text = format!(
+            "listener {port} 127.0.0.1\nallow_anonymous true\nset_tcp_nodelay true\npersistence false\n\
+             max_inflight_messages 0\nmax_queued_messages 100000\nlog_dest stderr\n{lines}"
+        );
+        fs::write(folder.join("mosquitto.conf"), text).expect("the folder takes a file");
+        let mut broker = Self {
+            folder,
+            port,
+            child: None,
+        };
+        broker.restart();
+        broker
+    }
+
+    /// Its port.
+    pub const fn port(&self) -> u16 {
+        self.port
+    }
+
+    /// Its folder, for files that its configuration names.
+    pub fn folder(&self) -> &Path {
+        &self.folder
+    }
+
+    /// Starts it again on its port, with nothing remembered.
+    pub fn restart(&mut self) {
+        self.stop();
+        let log = File::options()
+            .create(true)
+            .append(true)
+            .open(self.folder.join("log"))
+            .expect("the folder takes a log");
+        let child = Command::new(program())
+            .arg("-c")
+            .arg(self.folder.join("mosquitto.conf"))
+            .stdout(Stdio::null())
+            .stderr(log)
+            .spawn()
+            .expect("mosquitto starts; on Debian: apt-get install mosquitto");
+        self.child = Some(child);
+        let address = ("127.0.0.1", self.port);
+        wait("mosquitto to listen", SOON, || {
+            TcpStream::connect(address).ok()
+        });
+    }
+
+    /// Ends it at once, as a crash would.
+    pub fn stop(&mut self) {
+        if let Some(mut child) = self.child.take() {
+            child.kill().expect("our own child can be ended");
+            child.wait().expect("our own child can be waited for");
+        }
+    }
+}
+
+impl Drop for Broker {
+    fn drop(&mut self) {
+        self.stop();
+    }
+}
+
+fn program() -> PathBuf {
+    let usual = Path::new("/usr/sbin/mosquitto");
+    if usual.exists() {
+        usual.to_owned()
+    } else {
+        PathBuf::from("mosquitto")
+    }
+}
