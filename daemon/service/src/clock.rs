@@ -45,17 +45,32 @@ struct Rule {
 
 impl Rule {
     fn new(factor: f64, start_ns: i64, wall_ns: i64) -> Self {
-        Self { factor, origin_ns: start_ns, wall_origin_ns: wall_ns, ahead_ns: 0, last_ns: start_ns }
+        Self {
+            factor,
+            origin_ns: start_ns,
+            wall_origin_ns: wall_ns,
+            ahead_ns: 0,
+            last_ns: start_ns,
+        }
     }
 
     /// Stamps the moment `mono_ns` after the start, when the wall clock reads `wall_ns`.
     fn stamp(&mut self, mono_ns: i64, wall_ns: i64) -> (Option<Step>, Stamp) {
-        let run = if self.factor == 1.0 { mono_ns } else { (mono_ns as f64 * self.factor) as i64 };
+        let run = if self.factor == 1.0 {
+            mono_ns
+        } else {
+            (mono_ns as f64 * self.factor) as i64
+        };
         let now = self.origin_ns.saturating_add(run).max(self.last_ns);
-        let off = wall_ns.saturating_sub(self.wall_origin_ns).saturating_sub(mono_ns);
+        let off = wall_ns
+            .saturating_sub(self.wall_origin_ns)
+            .saturating_sub(mono_ns);
         let mut step = None;
         if off.unsigned_abs() >= STEP.ns().unsigned_abs() {
-            step = Some(Step { arrival: Arrival::from_ns(now), by_ns: off });
+            step = Some(Step {
+                arrival: Arrival::from_ns(now),
+                by_ns: off,
+            });
             self.wall_origin_ns = self.wall_origin_ns.saturating_add(off);
             let jump = off.saturating_sub(self.ahead_ns).max(0);
             self.ahead_ns = ahead_after(Span::from_ns(self.ahead_ns), off).ns();
@@ -64,7 +79,13 @@ impl Rule {
         } else {
             self.last_ns = now;
         }
-        (step, Stamp { arrival: Arrival::from_ns(self.last_ns), ahead: Span::from_ns(self.ahead_ns) })
+        (
+            step,
+            Stamp {
+                arrival: Arrival::from_ns(self.last_ns),
+                ahead: Span::from_ns(self.ahead_ns),
+            },
+        )
     }
 }
 
@@ -84,14 +105,20 @@ impl Clock {
     /// A clock that runs with true time, from the wall clock's present reading.
     pub fn new() -> Self {
         let wall = wall_ns();
-        Self { began: Instant::now(), rule: Rule::new(1.0, wall, wall) }
+        Self {
+            began: Instant::now(),
+            rule: Rule::new(1.0, wall, wall),
+        }
     }
 
     /// A clock that starts at `start` and runs `factor` times as fast as true time.
     ///
     /// For demonstrations and tests; the gateway message shows the factor.
     pub fn scaled(factor: f64, start: Arrival) -> Self {
-        Self { began: Instant::now(), rule: Rule::new(factor, start.ns(), wall_ns()) }
+        Self {
+            began: Instant::now(),
+            rule: Rule::new(factor, start.ns(), wall_ns()),
+        }
     }
 
     /// How much faster than true time this clock runs.
@@ -113,7 +140,9 @@ impl Default for Clock {
 }
 
 fn wall_ns() -> i64 {
-    let since = SystemTime::now().duration_since(UNIX_EPOCH).unwrap_or(Duration::ZERO);
+    let since = SystemTime::now()
+        .duration_since(UNIX_EPOCH)
+        .unwrap_or(Duration::ZERO);
     i64::try_from(since.as_nanos()).unwrap_or(i64::MAX)
 }
 
@@ -153,7 +182,10 @@ mod tests {
     fn stamps_follow_the_monotonic_clock_and_ignore_slewing_below_the_step() {
         let mut rule = Rule::new(1.0, 1000 * S, 1000 * S);
         let (step, stamp) = rule.stamp(10 * S, 1010 * S + STEP.ns() - 1);
-        assert_eq!((step, stamp.arrival.ns(), stamp.ahead.ns()), (None, 1010 * S, 0));
+        assert_eq!(
+            (step, stamp.arrival.ns(), stamp.ahead.ns()),
+            (None, 1010 * S, 0)
+        );
     }
 
     #[test]

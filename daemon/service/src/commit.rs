@@ -92,13 +92,23 @@ impl Committer {
 
     fn letter(&self, at: Arrival, told: Told) -> Option<Message> {
         let event = self.book.event(at, told)?;
-        let topic = self.topics.event_gateway(&self.book.constants().identity.gateway);
-        Some(Message::Letter { lane: topic.as_str().into(), topic, payload: event.to_json().into() })
+        let topic = self
+            .topics
+            .event_gateway(&self.book.constants().identity.gateway);
+        Some(Message::Letter {
+            lane: topic.as_str().into(),
+            topic,
+            payload: event.to_json().into(),
+        })
     }
 
     fn state(&self, gateway: humward_wire::out::Gateway) -> Message {
         let topic = self.topics.gateway(&self.book.constants().identity.gateway);
-        Message::State { rank: Rank::Gateway, topic, payload: gateway.to_json().into() }
+        Message::State {
+            rank: Rank::Gateway,
+            topic,
+            payload: gateway.to_json().into(),
+        }
     }
 
     /// Counts what the outbox let go; tells of it once there is room again, when the telling can be heard.
@@ -118,7 +128,9 @@ impl Committer {
         } else if self.outbox.lock().waiting().letters == 0
             && let Some(Overflow { from, count }) = overflow.take()
         {
-            let text = format!("{count} messages were let go because the outbox was full; raise outbox_mib or restore the broker sooner");
+            let text = format!(
+                "{count} messages were let go because the outbox was full; raise outbox_mib or restore the broker sooner"
+            );
             let told = Told {
                 span: (Some(from), Some(at)),
                 reason: Some("outbox_full".into()),
@@ -139,6 +151,11 @@ struct Overflow {
 /// One line of the log per event.
 fn log(action: &Action) {
     if let Action::Event(event) = action {
-        tracing::info!("event {} {}: {}", event.id, event.transition, event.finding.text);
+        tracing::info!(
+            "event {} {}: {}",
+            event.id,
+            event.transition,
+            event.finding.text
+        );
     }
 }

@@ -26,14 +26,23 @@ pub struct Decoder {
 impl Decoder {
     /// A decoder that takes times within `tolerance` of arrival.
     pub fn new(tolerance: Span) -> Self {
-        Self { limits: Limits::default(), tolerance, spare: Block::empty() }
+        Self {
+            limits: Limits::default(),
+            tolerance,
+            spare: Block::empty(),
+        }
     }
 
     /// Reads one message.
     ///
     /// # Errors
     /// The reason and the byte at fault; the payload is refused whole.
-    pub fn decode(&mut self, about: &About, stamp: Stamp, payload: &[u8]) -> Result<Input, Refusal> {
+    pub fn decode(
+        &mut self,
+        about: &About,
+        stamp: Stamp,
+        payload: &[u8],
+    ) -> Result<Input, Refusal> {
         let now = stamp.arrival.minus(stamp.ahead);
         match about {
             About::Block(source, encoding) => {
@@ -47,7 +56,10 @@ impl Decoder {
                 };
                 decode_into(&mut self.spare, payload, encoding, &self.limits)?;
                 self.within(self.spare.at, now, self.tolerance)?;
-                Ok(Input::Block(source.clone(), std::mem::replace(&mut self.spare, Block::empty())))
+                Ok(Input::Block(
+                    source.clone(),
+                    std::mem::replace(&mut self.spare, Block::empty()),
+                ))
             }
             About::Speed(asset) => {
                 let speed = speed::decode(payload)?;
@@ -59,9 +71,11 @@ impl Decoder {
                 self.within(process.at, now, Span::from_ns(i64::MAX))?;
                 Ok(Input::Process(asset.clone(), process))
             }
-            About::Command { asset, sender } => {
-                Ok(Input::Command(asset.clone(), sender.clone(), command::decode(payload)?))
-            }
+            About::Command { asset, sender } => Ok(Input::Command(
+                asset.clone(),
+                sender.clone(),
+                command::decode(payload)?,
+            )),
         }
     }
 
@@ -76,7 +90,11 @@ impl Decoder {
         let Some(at) = at else { return Ok(()) };
         let at = Arrival::from_ns(at);
         if now.since(at) > past || at.since(now) > self.tolerance {
-            return Err(Refusal { reason: Reason::FarFromArrival, offset: 0, key: Some("at") });
+            return Err(Refusal {
+                reason: Reason::FarFromArrival,
+                offset: 0,
+                key: Some("at"),
+            });
         }
         Ok(())
     }

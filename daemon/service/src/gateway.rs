@@ -42,7 +42,15 @@ pub struct Told {
 impl Told {
     /// A kind and a sentence, nothing else.
     pub fn new(kind: GatewayEventKind, text: String) -> Self {
-        Self { kind, text, span: (None, None), reason: None, topic: None, offset: None, count: None }
+        Self {
+            kind,
+            text,
+            span: (None, None),
+            reason: None,
+            topic: None,
+            offset: None,
+            count: None,
+        }
     }
 }
 
@@ -56,7 +64,10 @@ pub struct Meter {
 impl Meter {
     /// A letter took so long.
     pub fn worked(&self, time: Duration) {
-        self.busy_ns.fetch_add(u64::try_from(time.as_nanos()).unwrap_or(u64::MAX), Ordering::Relaxed);
+        self.busy_ns.fetch_add(
+            u64::try_from(time.as_nanos()).unwrap_or(u64::MAX),
+            Ordering::Relaxed,
+        );
     }
 
     /// A block was accepted.
@@ -108,7 +119,11 @@ impl Book {
                 losses: BTreeMap::new(),
                 ingest: Link::Down,
                 publish: Link::Down,
-                load: Load { busy_share: None, blocks_per_s: None, waiting_bytes: 0 },
+                load: Load {
+                    busy_share: None,
+                    blocks_per_s: None,
+                    waiting_bytes: 0,
+                },
                 measured,
             }),
         }
@@ -132,7 +147,14 @@ impl Book {
             return false;
         }
         let room = inside.losses.len() < REASONS;
-        let counted = inside.losses.entry(if room { reason.to_owned() } else { "other".to_owned() }).or_default();
+        let counted = inside
+            .losses
+            .entry(if room {
+                reason.to_owned()
+            } else {
+                "other".to_owned()
+            })
+            .or_default();
         *counted = counted.saturating_add(count);
         room
     }
@@ -159,8 +181,16 @@ impl Book {
 
     /// Measures the load since the last time.
     pub fn measure(&self, now: Arrival, waiting_bytes: usize) {
-        let busy: u64 = self.meters.iter().map(|meter| meter.busy_ns.load(Ordering::Relaxed)).sum();
-        let blocks: u64 = self.meters.iter().map(|meter| meter.blocks.load(Ordering::Relaxed)).sum();
+        let busy: u64 = self
+            .meters
+            .iter()
+            .map(|meter| meter.busy_ns.load(Ordering::Relaxed))
+            .sum();
+        let blocks: u64 = self
+            .meters
+            .iter()
+            .map(|meter| meter.blocks.load(Ordering::Relaxed))
+            .sum();
         let mut inside = self.lock();
         let (then, busy_then, blocks_then) = inside.measured;
         let seconds = now.since(then).secs();
@@ -176,7 +206,14 @@ impl Book {
     /// The state as of `at`: `blind` while nothing comes in.
     pub fn state(&self, at: Arrival) -> Gateway {
         let blind = self.lock().ingest != Link::Up;
-        self.message(at, if blind { GatewayState::Blind } else { GatewayState::Online })
+        self.message(
+            at,
+            if blind {
+                GatewayState::Blind
+            } else {
+                GatewayState::Online
+            },
+        )
     }
 
     /// The state to be left behind: by the will, or on a clean stop.
@@ -198,7 +235,14 @@ impl Book {
             started: Instant(self.constants.started.ns()),
             last_n: inside.last_n,
             load: inside.load.clone(),
-            losses: inside.losses.iter().map(|(reason, count)| Loss { reason: reason.clone(), count: *count }).collect(),
+            losses: inside
+                .losses
+                .iter()
+                .map(|(reason, count)| Loss {
+                    reason: reason.clone(),
+                    count: *count,
+                })
+                .collect(),
             time_factor: self.constants.time_factor,
             heartbeat_s: HEARTBEAT.as_secs_f64(),
             ingest: inside.ingest,
@@ -226,7 +270,9 @@ impl Book {
             text: told.text,
             from: from.map(|from| Instant(from.ns())),
             until: until.map(|until| Instant(until.ns())),
-            seconds: from.zip(until).map(|(from, until)| until.since(from).secs()),
+            seconds: from
+                .zip(until)
+                .map(|(from, until)| until.since(from).secs()),
             reason: told.reason,
             topic: told.topic,
             offset: told.offset.map(|offset| offset as u64),
@@ -237,8 +283,18 @@ impl Book {
     }
 
     fn header<M: humward_wire::out::Message>(&self, at: Arrival) -> Header {
-        let Identity { gateway, site, epoch } = &self.constants.identity;
-        Header::new::<M>(gateway.clone(), *epoch, site.clone(), None, Instant(at.ns()))
+        let Identity {
+            gateway,
+            site,
+            epoch,
+        } = &self.constants.identity;
+        Header::new::<M>(
+            gateway.clone(),
+            *epoch,
+            site.clone(),
+            None,
+            Instant(at.ns()),
+        )
     }
 
     fn lock(&self) -> MutexGuard<'_, Inside> {
@@ -259,9 +315,21 @@ mod tests {
 
     fn book() -> Book {
         let id = |text: &str| Id::new(text).expect("a test id");
-        let identity = Identity { gateway: id("gw-1"), site: id("harbour"), epoch: 7 };
+        let identity = Identity {
+            gateway: id("gw-1"),
+            site: id("harbour"),
+            epoch: 7,
+        };
         let started = Arrival::from_ns(100 * SECOND);
-        Book::new(Constants { identity, config_hash: "0".into(), started, time_factor: 1.0 }, 2)
+        Book::new(
+            Constants {
+                identity,
+                config_hash: "0".into(),
+                started,
+                time_factor: 1.0,
+            },
+            2,
+        )
     }
 
     #[test]
@@ -274,14 +342,22 @@ mod tests {
         assert_eq!(book.state(at).state, GatewayState::Online);
         book.ingest(Link::Waiting);
         assert_eq!(book.state(at).state, GatewayState::Blind);
-        assert_eq!((book.offline(at).state, book.offline(at).publish), (GatewayState::Offline, Link::Down));
+        assert_eq!(
+            (book.offline(at).state, book.offline(at).publish),
+            (GatewayState::Offline, Link::Down)
+        );
     }
 
     #[test]
     fn own_events_count_up_from_one_under_the_epoch() {
         let book = book();
         let ids: Vec<String> = (0..3)
-            .filter_map(|_| book.event(Arrival::from_ns(0), Told::new(GatewayEventKind::Started, "up".into())))
+            .filter_map(|_| {
+                book.event(
+                    Arrival::from_ns(0),
+                    Told::new(GatewayEventKind::Started, "up".into()),
+                )
+            })
             .map(|event| event.id.to_string())
             .collect();
         assert_eq!(ids, ["7-1", "7-2", "7-3"]);
@@ -308,6 +384,9 @@ mod tests {
         meter.accepted();
         book.measure(Arrival::from_ns(110 * SECOND), 0);
         let load = book.state(Arrival::from_ns(110 * SECOND)).load;
-        assert_eq!((load.busy_share, load.blocks_per_s), (Some(0.25), Some(0.1)));
+        assert_eq!(
+            (load.busy_share, load.blocks_per_s),
+            (Some(0.25), Some(0.1))
+        );
     }
 }

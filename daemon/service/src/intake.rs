@@ -117,8 +117,13 @@ impl Intake {
             let seconds = step.by_ns as f64 / 1e9;
             tracing::warn!("the wall clock was set by {seconds:+.1} s");
             self.all(&Letter::ClockStep(step.arrival, step.by_ns));
-            let text = format!("the wall clock was set by {seconds:+.1} s; check the time source if this was not meant");
-            self.waiting.push_back(Outcome::Told(stamp.arrival, Told::new(GatewayEventKind::ClockStep, text)));
+            let text = format!(
+                "the wall clock was set by {seconds:+.1} s; check the time source if this was not meant"
+            );
+            self.waiting.push_back(Outcome::Told(
+                stamp.arrival,
+                Told::new(GatewayEventKind::ClockStep, text),
+            ));
         }
         stamp
     }
@@ -126,43 +131,69 @@ impl Intake {
     fn take(&mut self, arrived: Arrived) {
         let stamp = self.stamp();
         match arrived {
-            Arrived::Publish { topic, payload, retained } => {
+            Arrived::Publish {
+                topic,
+                payload,
+                retained,
+            } => {
                 let Some(route) = self.routes.find(&topic) else {
                     self.refuse(stamp.arrival, "unknown_topic", &topic, "no point, speed or command of the configuration has this topic; correct the sender or map it");
                     return;
                 };
                 let replay = matches!(route.about, About::Block(..) | About::Command { .. });
                 if retained && replay {
-                    self.refuse(stamp.arrival, "retained", &topic, "a retained block or command is an old one; publish it without retain");
+                    self.refuse(
+                        stamp.arrival,
+                        "retained",
+                        &topic,
+                        "a retained block or command is an old one; publish it without retain",
+                    );
                     return;
                 }
                 self.post(route, stamp, payload, retained);
             }
             Arrived::Link(standing) => self.ingest_link(stamp.arrival, &standing),
             Arrived::TooLarge(bytes) => {
-                let text = format!("a packet of {bytes} bytes ended the connection; let its sensor send shorter blocks");
+                let text = format!(
+                    "a packet of {bytes} bytes ended the connection; let its sensor send shorter blocks"
+                );
                 self.tell_first(stamp.arrival, "packet_too_large", None, text);
             }
             Arrived::FilterRefused(filter) => {
-                let text = format!("the broker refused the subscription to {filter}; check its access rules");
+                let text = format!(
+                    "the broker refused the subscription to {filter}; check its access rules"
+                );
                 self.tell_first(stamp.arrival, "subscription_refused", Some(filter), text);
             }
         }
     }
 
     fn post(&mut self, route: Arc<Route>, stamp: Stamp, payload: bytes::Bytes, retained: bool) {
-        let Some(mailbox) = self.mailbox(route.group).map(Arc::clone) else { return };
+        let Some(mailbox) = self.mailbox(route.group).map(Arc::clone) else {
+            return;
+        };
         let bytes = payload.len();
         let held = self.shed.contains_key(&route.topic);
         // The gap goes in front of the first block after it, so it may only go when that block can, too.
         if held && mailbox.has_room(bytes) {
             self.tell_gap(&route.topic, stamp.arrival);
         }
-        let letter = Letter::Payload { route, stamp, payload, retained };
+        let letter = Letter::Payload {
+            route,
+            stamp,
+            payload,
+            retained,
+        };
         if let Err(Letter::Payload { route, .. }) = mailbox.post(letter, bytes) {
             self.book.lost("shed", 1);
-            if self.last_shed.is_none_or(|last| stamp.arrival.since(last) > SHED_QUIET) {
-                tracing::warn!("the workers cannot keep up: samples are let go, first on {}", route.topic);
+            if self
+                .last_shed
+                .is_none_or(|last| stamp.arrival.since(last) > SHED_QUIET)
+            {
+                tracing::warn!(
+                    "the workers cannot keep up: samples are let go, first on {}",
+                    route.topic
+                );
                 let told = Told {
                     topic: Some(route.topic.clone()),
                     reason: Some("shed".into()),
@@ -185,15 +216,29 @@ impl Intake {
         if let Some((route, blocks)) = self.shed.remove(topic)
             && let Some(mailbox) = self.mailbox(route.group)
         {
-            mailbox.control(Letter::Shed { route, arrival, blocks }, |_| false);
+            mailbox.control(
+                Letter::Shed {
+                    route,
+                    arrival,
+                    blocks,
+                },
+                |_| false,
+            );
         }
     }
 
     /// Tells the gaps of sources that sent nothing since, once their box has drained to half.
     fn tell_shed(&mut self, arrival: Arrival, all: bool) {
-        let drained = |route: &Route| self.mailbox(route.group).is_some_and(|mailbox| mailbox.is_half_empty());
-        let topics: Vec<String> =
-            self.shed.iter().filter(|(_, (route, _))| all || drained(route)).map(|(topic, _)| topic.clone()).collect();
+        let drained = |route: &Route| {
+            self.mailbox(route.group)
+                .is_some_and(|mailbox| mailbox.is_half_empty())
+        };
+        let topics: Vec<String> = self
+            .shed
+            .iter()
+            .filter(|(_, (route, _))| all || drained(route))
+            .map(|(topic, _)| topic.clone())
+            .collect();
         for topic in topics {
             self.tell_gap(&topic, arrival);
         }
@@ -207,10 +252,15 @@ impl Intake {
         let stamp = self.stamp();
         self.tell_shed(stamp.arrival, false);
         for mailbox in &self.boxes {
-            mailbox.control(Letter::Tick(stamp.arrival), |last| matches!(last, Letter::Tick(_)));
+            mailbox.control(Letter::Tick(stamp.arrival), |last| {
+                matches!(last, Letter::Tick(_))
+            });
         }
         let heartbeat = Span::from_secs_f64(HEARTBEAT.as_secs_f64() * self.clock.factor());
-        if self.beat.is_none_or(|last| stamp.arrival.since(last) >= heartbeat) {
+        if self
+            .beat
+            .is_none_or(|last| stamp.arrival.since(last) >= heartbeat)
+        {
             self.say_state(stamp.arrival);
         }
     }
@@ -235,7 +285,9 @@ impl Intake {
                         span: (Some(since), Some(arrival)),
                         ..Told::new(
                             GatewayEventKind::IngestRestored,
-                            format!("blocks can come in again after {seconds:.0} s; samples of that time may be missing"),
+                            format!(
+                                "blocks can come in again after {seconds:.0} s; samples of that time may be missing"
+                            ),
                         )
                     };
                     self.waiting.push_back(Outcome::Told(arrival, told));
@@ -254,7 +306,10 @@ impl Intake {
                         span: (Some(arrival), None),
                         ..Told::new(
                             GatewayEventKind::IngestLost,
-                            format!("no block can come in since {}: {why}", Instant(arrival.ns())),
+                            format!(
+                                "no block can come in since {}: {why}",
+                                Instant(arrival.ns())
+                            ),
                         )
                     };
                     self.waiting.push_back(Outcome::Told(arrival, told));
@@ -275,9 +330,21 @@ impl Intake {
     }
 
     /// Counts a loss; the first of its reason is logged and told.
-    fn tell_first(&mut self, arrival: Arrival, reason: &'static str, topic: Option<String>, text: String) {
+    fn tell_first(
+        &mut self,
+        arrival: Arrival,
+        reason: &'static str,
+        topic: Option<String>,
+        text: String,
+    ) {
         if self.book.lost(reason, 1) {
-            tracing::warn!("{}{text}", topic.as_ref().map(|topic| format!("{topic}: ")).unwrap_or_default());
+            tracing::warn!(
+                "{}{text}",
+                topic
+                    .as_ref()
+                    .map(|topic| format!("{topic}: "))
+                    .unwrap_or_default()
+            );
             let told = Told {
                 reason: Some(reason.to_owned()),
                 topic,

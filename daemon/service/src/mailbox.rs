@@ -24,7 +24,14 @@ struct Inside<T> {
 impl<T> Mailbox<T> {
     /// An empty box that holds payloads of `capacity` bytes together.
     pub fn new(capacity: usize) -> Self {
-        Self { inside: Mutex::new(Inside { letters: VecDeque::new(), bytes: 0 }), arrived: Condvar::new(), capacity }
+        Self {
+            inside: Mutex::new(Inside {
+                letters: VecDeque::new(),
+                bytes: 0,
+            }),
+            arrived: Condvar::new(),
+            capacity,
+        }
     }
 
     /// Puts in a letter with a payload of `bytes`; gives it back when there is no room.
@@ -65,7 +72,10 @@ impl<T> Mailbox<T> {
                 inside.bytes -= bytes;
                 return letter;
             }
-            inside = self.arrived.wait(inside).unwrap_or_else(PoisonError::into_inner);
+            inside = self
+                .arrived
+                .wait(inside)
+                .unwrap_or_else(PoisonError::into_inner);
         }
     }
 
@@ -105,7 +115,10 @@ mod tests {
         assert_eq!(mailbox.post("c", 40), Ok(()));
         mailbox.control("stop", |_| false);
         assert_eq!(mailbox.waiting(), 100);
-        assert_eq!([mailbox.take(), mailbox.take(), mailbox.take()], ["a", "c", "stop"]);
+        assert_eq!(
+            [mailbox.take(), mailbox.take(), mailbox.take()],
+            ["a", "c", "stop"]
+        );
         assert_eq!(mailbox.waiting(), 0);
     }
 
@@ -127,7 +140,10 @@ mod tests {
         assert_eq!(mailbox.post(7, 1), Ok(()));
         mailbox.control(-3, tick);
         mailbox.control(-4, tick);
-        assert_eq!([mailbox.take(), mailbox.take(), mailbox.take()], [-2, 7, -4]);
+        assert_eq!(
+            [mailbox.take(), mailbox.take(), mailbox.take()],
+            [-2, 7, -4]
+        );
     }
 
     #[test]

@@ -25,7 +25,11 @@ pub fn of(action: &Action, topics: &Topics) -> Option<Message> {
     match action {
         Action::Event(event) => {
             let topic = topics.event(event.header.asset.as_ref()?);
-            Some(Message::Letter { lane: topic.as_str().into(), topic, payload: event_json(event).into() })
+            Some(Message::Letter {
+                lane: topic.as_str().into(),
+                topic,
+                payload: event_json(event).into(),
+            })
         }
         Action::Status(status) => Some(Message::State {
             rank: Rank::Status,
@@ -35,7 +39,9 @@ pub fn of(action: &Action, topics: &Topics) -> Option<Message> {
         Action::Alarm { asset, watch, open } => Some(Message::State {
             rank: Rank::Alarm,
             topic: topics.alarm(asset, watch),
-            payload: open.as_ref().map_or_else(Bytes::new, |alarm| alarm.clone().fit(MAX_EVENT).0.to_json().into()),
+            payload: open.as_ref().map_or_else(Bytes::new, |alarm| {
+                alarm.clone().fit(MAX_EVENT).0.to_json().into()
+            }),
         }),
         Action::Evidence(evidence) => {
             let asset = evidence.header.asset.as_ref()?;
@@ -45,7 +51,11 @@ pub fn of(action: &Action, topics: &Topics) -> Option<Message> {
                 payload: evidence.clone().fit(MAX_EVIDENCE).0.encode().into(),
             })
         }
-        Action::Reply { asset, sender, reply } => Some(Message::Letter {
+        Action::Reply {
+            asset,
+            sender,
+            reply,
+        } => Some(Message::Letter {
             lane: format!("reply/{sender}").into(),
             topic: topics.reply(sender, asset),
             payload: reply.to_json().into(),

@@ -88,8 +88,18 @@ impl RehearseError {
 ///
 /// # Errors
 /// [`RehearseError`] of the first recording that cannot be rehearsed to its end.
-pub fn run(config: Loaded, recordings: &[PathBuf], out: &mut dyn Write) -> Result<(), RehearseError> {
-    run_with(&config, recordings, Options::default(), out, &mut io::stderr())
+pub fn run(
+    config: Loaded,
+    recordings: &[PathBuf],
+    out: &mut dyn Write,
+) -> Result<(), RehearseError> {
+    run_with(
+        &config,
+        recordings,
+        Options::default(),
+        out,
+        &mut io::stderr(),
+    )
 }
 
 /// As [`run`], with a choice of what to print and of where the summary goes.
@@ -105,7 +115,10 @@ pub fn run_with(
 ) -> Result<(), RehearseError> {
     let routes = setup::routes(config);
     for path in recordings {
-        let bytes = std::fs::read(path).map_err(|cause| RehearseError::Read { path: path.clone(), cause })?;
+        let bytes = std::fs::read(path).map_err(|cause| RehearseError::Read {
+            path: path.clone(),
+            cause,
+        })?;
         let mut rehearsal = Rehearsal::new(config, &routes, options, out);
         let done = rehearsal.recording(path, &bytes);
         let summary = rehearsal.summary;
@@ -130,7 +143,12 @@ struct Rehearsal<'a> {
 }
 
 impl<'a> Rehearsal<'a> {
-    fn new(config: &'a Loaded, routes: &'a Routes, options: Options, out: &'a mut dyn Write) -> Self {
+    fn new(
+        config: &'a Loaded,
+        routes: &'a Routes,
+        options: Options,
+        out: &'a mut dyn Write,
+    ) -> Self {
         Self {
             config,
             routes,
@@ -146,7 +164,10 @@ impl<'a> Rehearsal<'a> {
     }
 
     fn recording(&mut self, path: &Path, bytes: &[u8]) -> Result<(), RehearseError> {
-        let fault = |fault| RehearseError::Recording { path: path.to_owned(), fault };
+        let fault = |fault| RehearseError::Recording {
+            path: path.to_owned(),
+            fault,
+        };
         let (header, reader) = open(bytes).map_err(fault)?;
         let mut last = None;
         let mut broken = None;
@@ -188,28 +209,45 @@ impl<'a> Rehearsal<'a> {
     fn start(&mut self, arrival: Arrival) -> Result<(), RehearseError> {
         self.groups = self.config.groups().iter().map(|_| Group::new()).collect();
         for (index, plan) in self.config.groups().iter().enumerate() {
-            self.step(index, arrival, &Input::Started(setup::identity(self.config)))?;
+            self.step(
+                index,
+                arrival,
+                &Input::Started(setup::identity(self.config)),
+            )?;
             self.step(index, arrival, &Input::Plan(Arc::clone(plan)))?;
         }
         Ok(())
     }
 
-    fn record(&mut self, arrival: Arrival, record: &Record<'_>, header: &Header) -> Result<(), RehearseError> {
+    fn record(
+        &mut self,
+        arrival: Arrival,
+        record: &Record<'_>,
+        header: &Header,
+    ) -> Result<(), RehearseError> {
         match record {
             Record::Message { topic, payload, .. } => self.message(arrival, topic, payload),
             // A restart loses what was in memory, as the live daemon did.
             Record::Started { .. } => self.start(arrival),
             Record::Plan { config_hash, .. } => {
                 if *config_hash != self.config.hash() {
-                    self.summary.other_plan(header.config_hash.as_deref().unwrap_or(config_hash));
+                    self.summary
+                        .other_plan(header.config_hash.as_deref().unwrap_or(config_hash));
                 }
                 Ok(())
             }
-            Record::Gap { topic, reason, blocks, .. } => {
+            Record::Gap {
+                topic,
+                reason,
+                blocks,
+                ..
+            } => {
                 let blocks = blocks.unwrap_or(1);
                 match self.routes.find(topic) {
                     Some(route) => {
-                        let About::Block(source, _) = &route.about else { return Ok(()) };
+                        let About::Block(source, _) = &route.about else {
+                            return Ok(());
+                        };
                         let gap = Input::Gap(Some(source.clone()), cause(reason), blocks);
                         self.step(route.group, arrival, &gap)
                     }
@@ -224,13 +262,21 @@ impl<'a> Rehearsal<'a> {
         }
     }
 
-    fn message(&mut self, arrival: Arrival, topic: &str, payload: &[u8]) -> Result<(), RehearseError> {
+    fn message(
+        &mut self,
+        arrival: Arrival,
+        topic: &str,
+        payload: &[u8],
+    ) -> Result<(), RehearseError> {
         let Some(route) = self.routes.find(topic) else {
             self.summary.unknown(topic);
             return Ok(());
         };
         self.summary.known += 1;
-        let stamp = Stamp { arrival, ahead: self.ahead };
+        let stamp = Stamp {
+            arrival,
+            ahead: self.ahead,
+        };
         match self.decoder.decode(&route.about, stamp, payload) {
             Ok(input) => {
                 let done = self.step(route.group, arrival, &input);
@@ -251,7 +297,12 @@ impl<'a> Rehearsal<'a> {
         (0..self.groups.len()).try_for_each(|group| self.step(group, arrival, input))
     }
 
-    fn step(&mut self, group: GroupIndex, arrival: Arrival, input: &Input) -> Result<(), RehearseError> {
+    fn step(
+        &mut self,
+        group: GroupIndex,
+        arrival: Arrival,
+        input: &Input,
+    ) -> Result<(), RehearseError> {
         if let Some(group) = self.groups.get_mut(group) {
             group.step(arrival, input, &mut self.scratch, &mut self.actions);
         }

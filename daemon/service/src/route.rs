@@ -54,7 +54,11 @@ pub struct Routes {
 impl Routes {
     /// No topics yet; commands are looked up below `topics`.
     pub fn new(topics: Topics) -> Self {
-        Self { topics, exact: HashMap::new(), assets: HashMap::new() }
+        Self {
+            topics,
+            exact: HashMap::new(),
+            assets: HashMap::new(),
+        }
     }
 
     /// Adds an asset, which may be sent commands.
@@ -85,9 +89,14 @@ impl Routes {
         match self.topics.parse_inbound(topic) {
             Ok(Inbound::Command { sender, asset }) => {
                 let group = *self.assets.get(&asset)?;
-                Some(Arc::new(Route { topic: topic.to_owned(), group, about: About::Command { asset, sender } }))
+                Some(Arc::new(Route {
+                    topic: topic.to_owned(),
+                    group,
+                    about: About::Command { asset, sender },
+                }))
             }
-            Ok(Inbound::Block { .. } | Inbound::Speed { .. } | Inbound::Process { .. }) | Err(_) => None,
+            Ok(Inbound::Block { .. } | Inbound::Speed { .. } | Inbound::Process { .. })
+            | Err(_) => None,
         }
     }
 }
@@ -108,22 +117,46 @@ mod tests {
         let topics = Topics::new("humward/v1", &id("harbour")).expect("a test root");
         let mut routes = Routes::new(topics);
         routes.add_asset(id("P-1"), 3);
-        let source = Source { asset: id("P-1"), source: id("de") };
-        routes.add(Route { topic: "plant/sensors/17".into(), group: 3, about: About::Block(source, None) });
+        let source = Source {
+            asset: id("P-1"),
+            source: id("de"),
+        };
+        routes.add(Route {
+            topic: "plant/sensors/17".into(),
+            group: 3,
+            about: About::Block(source, None),
+        });
         routes
     }
 
     #[test]
     fn a_mapped_topic_leads_to_its_group_and_the_default_one_it_replaced_does_not() {
-        assert_eq!(routes().find("plant/sensors/17").map(|route| route.group), Some(3));
+        assert_eq!(
+            routes().find("plant/sensors/17").map(|route| route.group),
+            Some(3)
+        );
         assert_eq!(routes().find("humward/v1/harbour/block/P-1/de"), None);
     }
 
     #[test]
     fn a_command_is_routed_by_its_asset_and_keeps_its_sender() {
-        let route = routes().find("humward/v1/harbour/command/scada/P-1").expect("P-1 is known");
-        assert_eq!((route.group, &route.about), (3, &About::Command { asset: id("P-1"), sender: id("scada") }));
+        let route = routes()
+            .find("humward/v1/harbour/command/scada/P-1")
+            .expect("P-1 is known");
+        assert_eq!(
+            (route.group, &route.about),
+            (
+                3,
+                &About::Command {
+                    asset: id("P-1"),
+                    sender: id("scada")
+                }
+            )
+        );
         assert_eq!(routes().find("humward/v1/harbour/command/scada/P-2"), None);
-        assert_eq!(routes().find("humward/v1/elsewhere/command/scada/P-1"), None);
+        assert_eq!(
+            routes().find("humward/v1/elsewhere/command/scada/P-1"),
+            None
+        );
     }
 }

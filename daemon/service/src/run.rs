@@ -51,7 +51,9 @@ pub enum RunError {
         cause: io::Error,
     },
     /// A part of the daemon ended by itself, which is a fault in it; a restart begins afresh.
-    #[error("{part} ended by itself, and with it the watch; the log above says why, restart the daemon")]
+    #[error(
+        "{part} ended by itself, and with it the watch; the log above says why, restart the daemon"
+    )]
     PartEnded {
         /// Which part.
         part: &'static str,
@@ -72,7 +74,11 @@ impl RunError {
 pub fn log() {
     use tracing_subscriber::EnvFilter;
     let filter = EnvFilter::try_from_default_env().unwrap_or_else(|_| EnvFilter::new("info"));
-    let started = tracing_subscriber::fmt().with_env_filter(filter).with_writer(io::stderr).with_target(false).try_init();
+    let started = tracing_subscriber::fmt()
+        .with_env_filter(filter)
+        .with_writer(io::stderr)
+        .with_target(false)
+        .try_init();
     if started.is_err() {
         tracing::debug!("the log had been started before");
     }
@@ -84,7 +90,10 @@ pub fn log() {
 /// [`RunError`]; a broker that is away or refuses us is no error but waited for.
 pub fn run(config: Loaded) -> Result<(), RunError> {
     runtime()?.block_on(async {
-        let stop = signal().map_err(|cause| RunError::System { what: "signals", cause })?;
+        let stop = signal().map_err(|cause| RunError::System {
+            what: "signals",
+            cause,
+        })?;
         serve(config, Clock::new(), stop).await
     })
 }
@@ -97,7 +106,10 @@ pub fn runtime() -> Result<tokio::runtime::Runtime, RunError> {
     tokio::runtime::Builder::new_current_thread()
         .enable_all()
         .build()
-        .map_err(|cause| RunError::System { what: "a runtime", cause })
+        .map_err(|cause| RunError::System {
+            what: "a runtime",
+            cause,
+        })
 }
 
 fn signal() -> Result<impl Future<Output = ()>, io::Error> {
@@ -117,7 +129,11 @@ fn signal() -> Result<impl Future<Output = ()>, io::Error> {
 ///
 /// # Errors
 /// As [`run`].
-pub async fn serve(config: Loaded, mut clock: Clock, stop: impl Future<Output = ()>) -> Result<(), RunError> {
+pub async fn serve(
+    config: Loaded,
+    mut clock: Clock,
+    stop: impl Future<Output = ()>,
+) -> Result<(), RunError> {
     let settings = setup::settings(&config)?;
     let started = clock.stamp().1.arrival;
     let wanted = match config.gateway().workers() {
@@ -137,8 +153,12 @@ pub async fn serve(config: Loaded, mut clock: Clock, stop: impl Future<Output = 
     let outbox = Shared::new(Box::new(Memory::new(config.gateway().outbox_bytes())));
     outbox.keep(setup::nothing_open(&config));
     let (to, from) = channel();
-    let committer =
-        Committer { from, outbox: outbox.clone(), book: Arc::clone(&book), topics: config.topics().clone() };
+    let committer = Committer {
+        from,
+        outbox: outbox.clone(),
+        book: Arc::clone(&book),
+        topics: config.topics().clone(),
+    };
     let keeper = thread("keeper", move || committer.run())?;
     let (boxes, crew) = hire(&config, workers, &to, &book)?;
 
@@ -156,9 +176,15 @@ pub async fn serve(config: Loaded, mut clock: Clock, stop: impl Future<Output = 
         stop: ingest_stopped,
     };
     let will = {
-        let (book, topic) = (Arc::clone(&book), config.topics().gateway(config.gateway().id()));
+        let (book, topic) = (
+            Arc::clone(&book),
+            config.topics().gateway(config.gateway().id()),
+        );
         // The will is said when we can no longer tell when; it carries the time of the connection it ends.
-        move || Will { topic: topic.clone(), payload: book.offline(book.last_stamp()).to_json() }
+        move || Will {
+            topic: topic.clone(),
+            payload: book.offline(book.last_stamp()).to_json(),
+        }
     };
     let publish = Publish {
         settings,
@@ -168,9 +194,18 @@ pub async fn serve(config: Loaded, mut clock: Clock, stop: impl Future<Output = 
         tell: standing_to,
         finish: finished,
     };
-    let told = Told::new(GatewayEventKind::Started, format!("humward {} watches", env!("CARGO_PKG_VERSION")));
+    let told = Told::new(
+        GatewayEventKind::Started,
+        format!("humward {} watches", env!("CARGO_PKG_VERSION")),
+    );
     send(&to, Outcome::Told(started, told));
-    let intake = Intake::new(clock, setup::routes(&config), boxes, Arc::clone(&book), to.clone());
+    let intake = Intake::new(
+        clock,
+        setup::routes(&config),
+        boxes,
+        Arc::clone(&book),
+        to.clone(),
+    );
     let ingest = tokio::spawn(ingest.run());
     let intake = tokio::spawn(intake.run(arrived, standing, intake_stopped));
     let publish = tokio::spawn(publish.run());
@@ -182,7 +217,9 @@ pub async fn serve(config: Loaded, mut clock: Clock, stop: impl Future<Output = 
     stop_ingest.send_replace(true);
     let ingest_ended = ingest.await;
     stop_intake.send_replace(true);
-    let mut clock = intake.await.map_err(|_| RunError::PartEnded { part: "the intake" })?;
+    let mut clock = intake
+        .await
+        .map_err(|_| RunError::PartEnded { part: "the intake" })?;
     join(crew, "a worker").await?;
     send(&to, Outcome::Offline(clock.stamp().1.arrival));
     drop(to);
@@ -190,11 +227,16 @@ pub async fn serve(config: Loaded, mut clock: Clock, stop: impl Future<Output = 
     finish.send_replace(true);
     if tokio::time::timeout(LAST_WORDS, publish).await.is_err() {
         let left = outbox.lock().waiting();
-        tracing::warn!("stopped with {} messages the broker did not take", left.letters + left.states);
+        tracing::warn!(
+            "stopped with {} messages the broker did not take",
+            left.letters + left.states
+        );
     }
     match (ended, ingest_ended) {
         (Some(part), _) => Err(RunError::PartEnded { part }),
-        (None, Err(_)) => Err(RunError::PartEnded { part: "the ingest connection" }),
+        (None, Err(_)) => Err(RunError::PartEnded {
+            part: "the ingest connection",
+        }),
         (None, Ok(())) => Ok(()),
     }
 }
@@ -203,7 +245,11 @@ fn say_what_is_watched(config: &Loaded, workers: usize) {
     for note in config.notes() {
         tracing::info!("{note}");
     }
-    let assets: Vec<_> = config.groups().iter().flat_map(|group| group.assets()).collect();
+    let assets: Vec<_> = config
+        .groups()
+        .iter()
+        .flat_map(|group| group.assets())
+        .collect();
     let points: usize = assets.iter().map(|asset| asset.spec().points.len()).sum();
     let watches: usize = assets.iter().map(|asset| asset.spec().watches.len()).sum();
     tracing::info!(
@@ -228,8 +274,13 @@ fn hire(
     let mut crew = Vec::new();
     for index in 0..workers {
         let mailbox = Arc::new(Mailbox::new(config.gateway().mailbox_bytes()));
-        let groups: BTreeMap<_, _> =
-            config.groups().iter().enumerate().filter(|(group, _)| group % workers == index).map(|(group, plan)| (group, Arc::clone(plan))).collect();
+        let groups: BTreeMap<_, _> = config
+            .groups()
+            .iter()
+            .enumerate()
+            .filter(|(group, _)| group % workers == index)
+            .map(|(group, plan)| (group, Arc::clone(plan)))
+            .collect();
         let worker = Worker {
             index,
             groups,
@@ -245,11 +296,17 @@ fn hire(
     Ok((boxes, crew))
 }
 
-fn thread(name: &'static str, work: impl FnOnce() + Send + 'static) -> Result<JoinHandle<()>, RunError> {
+fn thread(
+    name: &'static str,
+    work: impl FnOnce() + Send + 'static,
+) -> Result<JoinHandle<()>, RunError> {
     std::thread::Builder::new()
         .name(name.to_owned())
         .spawn(work)
-        .map_err(|cause| RunError::System { what: "a thread", cause })
+        .map_err(|cause| RunError::System {
+            what: "a thread",
+            cause,
+        })
 }
 
 /// Resolves when a thread has ended that never should.
@@ -266,8 +323,15 @@ async fn lost_part(crew: &[JoinHandle<()>], keeper: &JoinHandle<()>) -> &'static
 }
 
 async fn join(threads: Vec<JoinHandle<()>>, part: &'static str) -> Result<(), RunError> {
-    let joined = tokio::task::spawn_blocking(move || threads.into_iter().all(|thread| thread.join().is_ok())).await;
-    if joined.is_ok_and(|all| all) { Ok(()) } else { Err(RunError::PartEnded { part }) }
+    let joined = tokio::task::spawn_blocking(move || {
+        threads.into_iter().all(|thread| thread.join().is_ok())
+    })
+    .await;
+    if joined.is_ok_and(|all| all) {
+        Ok(())
+    } else {
+        Err(RunError::PartEnded { part })
+    }
 }
 
 fn send(to: &SyncSender<Outcome>, outcome: Outcome) {

@@ -98,17 +98,28 @@ impl Worker {
             let began = Moment::now();
             match letter {
                 Letter::Stop => return,
-                Letter::Payload { route, stamp, payload, retained } => {
+                Letter::Payload {
+                    route,
+                    stamp,
+                    payload,
+                    retained,
+                } => {
                     self.payload(&mut bench, &route, stamp, &payload, retained);
                 }
-                Letter::Shed { route, arrival, blocks } => {
+                Letter::Shed {
+                    route,
+                    arrival,
+                    blocks,
+                } => {
                     if let About::Block(source, _) = &route.about {
                         let gap = Input::Gap(Some(Source::clone(source)), GapCause::Shed, blocks);
                         self.step(&mut bench, route.group, arrival, &gap);
                     }
                 }
                 Letter::Link(arrival, up) => self.step_all(&mut bench, arrival, &Input::Link(up)),
-                Letter::ClockStep(arrival, by) => self.step_all(&mut bench, arrival, &Input::ClockStep(by)),
+                Letter::ClockStep(arrival, by) => {
+                    self.step_all(&mut bench, arrival, &Input::ClockStep(by))
+                }
                 Letter::Tick(arrival) => {
                     let due: Vec<_> = bench
                         .groups
@@ -127,7 +138,14 @@ impl Worker {
         }
     }
 
-    fn payload(&self, bench: &mut Bench, route: &Route, stamp: Stamp, payload: &[u8], retained: bool) {
+    fn payload(
+        &self,
+        bench: &mut Bench,
+        route: &Route,
+        stamp: Stamp,
+        payload: &[u8],
+        retained: bool,
+    ) {
         let input = match bench.decoder.decode(&route.about, stamp, payload) {
             Ok(input) => input,
             Err(refusal) => {
@@ -159,7 +177,10 @@ impl Worker {
         };
         if timeless {
             if self.book.lost("retained_without_time", 1) {
-                tracing::warn!("{}: a retained value without its own time was refused; add `at` to it", route.topic);
+                tracing::warn!(
+                    "{}: a retained value without its own time was refused; add `at` to it",
+                    route.topic
+                );
             }
             return;
         }
@@ -192,8 +213,12 @@ impl Worker {
     fn forbid(&self, arrival: Arrival, asset: &Id, sender: &Id, command: &Command) {
         let verb = command.verb.text();
         self.book.lost("command_not_allowed", 1);
-        tracing::warn!("{sender} asked {verb:?} of {asset}, which the configuration does not allow");
-        let why = format!("{verb:?} is not among the commands the configuration allows; add it to `commands`");
+        tracing::warn!(
+            "{sender} asked {verb:?} of {asset}, which the configuration does not allow"
+        );
+        let why = format!(
+            "{verb:?} is not among the commands the configuration allows; add it to `commands`"
+        );
         let mut reply = self.reply(arrival, asset, why);
         reply.id = Some(command.id.clone());
         reply.occurrence = command.occurrence.clone();
@@ -201,9 +226,19 @@ impl Worker {
     }
 
     fn reply(&self, arrival: Arrival, asset: &Id, why: String) -> Reply {
-        let Identity { gateway, site, epoch } = self.book.constants().identity.clone();
+        let Identity {
+            gateway,
+            site,
+            epoch,
+        } = self.book.constants().identity.clone();
         Reply {
-            header: Header::new::<Reply>(gateway, epoch, site, Some(asset.clone()), Instant(arrival.ns())),
+            header: Header::new::<Reply>(
+                gateway,
+                epoch,
+                site,
+                Some(asset.clone()),
+                Instant(arrival.ns()),
+            ),
             id: None,
             outcome: Answer::Refused,
             outcome_code: Answer::Refused.code(),
@@ -215,7 +250,11 @@ impl Worker {
     }
 
     fn answer(&self, arrival: Arrival, asset: &Id, sender: &Id, reply: Reply) {
-        let action = Action::Reply { asset: asset.clone(), sender: sender.clone(), reply };
+        let action = Action::Reply {
+            asset: asset.clone(),
+            sender: sender.clone(),
+            reply,
+        };
         self.send(Outcome::Actions(arrival, vec![action]));
     }
 
@@ -227,10 +266,15 @@ impl Worker {
     }
 
     fn step(&self, bench: &mut Bench, group: GroupIndex, arrival: Arrival, input: &Input) {
-        let Some(group) = bench.groups.get_mut(&group) else { return };
+        let Some(group) = bench.groups.get_mut(&group) else {
+            return;
+        };
         group.step(arrival, input, &mut bench.scratch, &mut bench.actions);
         if !bench.actions.is_empty() {
-            self.send(Outcome::Actions(arrival, std::mem::take(&mut bench.actions)));
+            self.send(Outcome::Actions(
+                arrival,
+                std::mem::take(&mut bench.actions),
+            ));
         }
     }
 

@@ -18,7 +18,13 @@ fn id(text: &str) -> Id {
 }
 
 fn about() -> About {
-    About::Block(Source { asset: id("P-1"), source: id("de") }, None)
+    About::Block(
+        Source {
+            asset: id("P-1"),
+            source: id("de"),
+        },
+        None,
+    )
 }
 
 fn payload(at: i64) -> Vec<u8> {
@@ -33,25 +39,43 @@ fn payload(at: i64) -> Vec<u8> {
 }
 
 fn stamp(ahead_s: i64) -> Stamp {
-    Stamp { arrival: Arrival::from_ns(NOW), ahead: Span::from_secs(ahead_s) }
+    Stamp {
+        arrival: Arrival::from_ns(NOW),
+        ahead: Span::from_secs(ahead_s),
+    }
 }
 
 fn reason(about: &About, stamp: Stamp, payload: &[u8]) -> Option<Reason> {
-    Decoder::new(Span::from_secs(TOLERANCE)).decode(about, stamp, payload).err().map(|refusal| refusal.reason)
+    Decoder::new(Span::from_secs(TOLERANCE))
+        .decode(about, stamp, payload)
+        .err()
+        .map(|refusal| refusal.reason)
 }
 
 #[test]
 fn a_block_further_from_its_arrival_than_the_tolerance_is_refused_on_either_side() {
-    for (offset, refused) in [(TOLERANCE, false), (TOLERANCE + 1, true), (-TOLERANCE, false), (-TOLERANCE - 1, true)] {
+    for (offset, refused) in [
+        (TOLERANCE, false),
+        (TOLERANCE + 1, true),
+        (-TOLERANCE, false),
+        (-TOLERANCE - 1, true),
+    ] {
         let found = reason(&about(), stamp(0), &payload(NOW + offset * SECOND));
-        assert_eq!(found, refused.then_some(Reason::FarFromArrival), "{offset} s");
+        assert_eq!(
+            found,
+            refused.then_some(Reason::FarFromArrival),
+            "{offset} s"
+        );
     }
 }
 
 #[test]
 fn stamps_that_run_ahead_of_a_clock_set_back_do_not_refuse_blocks_of_the_present() {
     let hour_back = payload(NOW - 3600 * SECOND);
-    assert_eq!(reason(&about(), stamp(0), &hour_back), Some(Reason::FarFromArrival));
+    assert_eq!(
+        reason(&about(), stamp(0), &hour_back),
+        Some(Reason::FarFromArrival)
+    );
     assert_eq!(reason(&about(), stamp(3600), &hour_back), None);
 }
 
@@ -59,9 +83,16 @@ fn stamps_that_run_ahead_of_a_clock_set_back_do_not_refuse_blocks_of_the_present
 fn an_old_speed_is_only_stale_and_one_of_the_future_is_refused() {
     let speed = |at: i64| format!("{{\"at\": {at}, \"rpm\": 1482.0}}");
     let about = About::Speed(id("P-1"));
-    assert_eq!(reason(&about, stamp(0), speed(NOW - 86_400 * SECOND).as_bytes()), None);
     assert_eq!(
-        reason(&about, stamp(0), speed(NOW + (TOLERANCE + 1) * SECOND).as_bytes()),
+        reason(&about, stamp(0), speed(NOW - 86_400 * SECOND).as_bytes()),
+        None
+    );
+    assert_eq!(
+        reason(
+            &about,
+            stamp(0),
+            speed(NOW + (TOLERANCE + 1) * SECOND).as_bytes()
+        ),
         Some(Reason::FarFromArrival)
     );
 }
@@ -69,11 +100,26 @@ fn an_old_speed_is_only_stale_and_one_of_the_future_is_refused() {
 #[test]
 fn sample_memory_goes_round() {
     let mut decoder = Decoder::new(Span::from_secs(TOLERANCE));
-    let first = decoder.decode(&about(), stamp(0), &payload(NOW)).expect("a sound block");
-    let Input::Block(_, block) = &first else { unreachable!("a block route gives a block") };
+    let first = decoder
+        .decode(&about(), stamp(0), &payload(NOW))
+        .expect("a sound block");
+    let Input::Block(_, block) = &first else {
+        unreachable!("a block route gives a block")
+    };
     let memory = block.samples.as_ptr();
     decoder.take_back(first);
-    let second = decoder.decode(&about(), stamp(0), &payload(NOW)).expect("a sound block");
-    let Input::Block(source, block) = &second else { unreachable!("a block route gives a block") };
-    assert_eq!((block.samples.as_ptr(), block.samples.len(), source.source.as_str()), (memory, 4, "de"));
+    let second = decoder
+        .decode(&about(), stamp(0), &payload(NOW))
+        .expect("a sound block");
+    let Input::Block(source, block) = &second else {
+        unreachable!("a block route gives a block")
+    };
+    assert_eq!(
+        (
+            block.samples.as_ptr(),
+            block.samples.len(),
+            source.source.as_str()
+        ),
+        (memory, 4, "de")
+    );
 }

@@ -23,7 +23,10 @@ pub struct Backoff {
 impl Backoff {
     /// A new row; `seed` decides its jitter.
     pub fn new(seed: u64) -> Self {
-        Self { next: SHORTEST, random: fastrand::Rng::with_seed(seed) }
+        Self {
+            next: SHORTEST,
+            random: fastrand::Rng::with_seed(seed),
+        }
     }
 
     /// The wait after a connection that held for `held`, zero if none came about.
@@ -83,6 +86,9 @@ mod tests {
 
     #[test]
     fn two_gateways_do_not_wait_alike() {
-        assert_ne!(Backoff::new(1).after(Duration::ZERO), Backoff::new(2).after(Duration::ZERO));
+        assert_ne!(
+            Backoff::new(1).after(Duration::ZERO),
+            Backoff::new(2).after(Duration::ZERO)
+        );
     }
 }

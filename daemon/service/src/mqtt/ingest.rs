@@ -72,9 +72,14 @@ impl Ingest {
             let wait = match &ended {
                 Ended::Stopped => return,
                 Ended::Refused(_) => backoff.refused(),
-                Ended::TooLarge(_) | Ended::Silent | Ended::Broken(_) => backoff.after(began.elapsed()),
+                Ended::TooLarge(_) | Ended::Silent | Ended::Broken(_) => {
+                    backoff.after(began.elapsed())
+                }
             };
-            tracing::warn!("ingest connection: {ended}; next try in {:.1} s", wait.as_secs_f64());
+            tracing::warn!(
+                "ingest connection: {ended}; next try in {:.1} s",
+                wait.as_secs_f64()
+            );
             if let Ended::TooLarge(bytes) = ended {
                 end_session = true;
                 self.hand_on(Arrived::TooLarge(bytes)).await;
@@ -94,7 +99,8 @@ impl Ingest {
     }
 
     async fn connection(&mut self, end_session: bool, subscribed: &mut bool) -> Ended {
-        let (client, mut events) = AsyncClient::new(self.settings.options(&self.client_id, end_session), 8);
+        let (client, mut events) =
+            AsyncClient::new(self.settings.options(&self.client_id, end_session), 8);
         events.set_network_options(network());
         let silence = self.settings.silence();
         let mut subscribing = Subscribing::default();
@@ -131,8 +137,12 @@ impl Ingest {
                 Event::Incoming(Incoming::Publish(publish)) => self.publish(publish).await,
                 Event::Incoming(Incoming::ConnAck(_)) if end_session => return Ended::Stopped,
                 Event::Incoming(Incoming::ConnAck(ack)) => {
-                    tracing::info!("ingest connected to {}:{}, {} session", self.settings.host, self.settings.port,
-                        if ack.session_present { "kept" } else { "new" });
+                    tracing::info!(
+                        "ingest connected to {}:{}, {} session",
+                        self.settings.host,
+                        self.settings.port,
+                        if ack.session_present { "kept" } else { "new" }
+                    );
                     if ack.session_present && *subscribed {
                         self.hand_on(Arrived::Link(Standing::Up)).await;
                     } else {
@@ -145,7 +155,9 @@ impl Ingest {
                 }
                 Event::Incoming(Incoming::SubAck(ack)) => {
                     for refused in subscribing.answered(&ack.return_codes) {
-                        tracing::error!("the broker refused the subscription to {refused}; check its access rules");
+                        tracing::error!(
+                            "the broker refused the subscription to {refused}; check its access rules"
+                        );
                         self.hand_on(Arrived::FilterRefused(refused)).await;
                     }
                     if subscribing.is_done() {
@@ -153,20 +165,30 @@ impl Ingest {
                             return Ended::Refused("every subscription".into());
                         }
                         *subscribed = subscribing.granted == self.filters.len();
-                        tracing::info!("subscribed to {} of {} filters", subscribing.granted, self.filters.len());
+                        tracing::info!(
+                            "subscribed to {} of {} filters",
+                            subscribing.granted,
+                            self.filters.len()
+                        );
                         self.hand_on(Arrived::Link(Standing::Up)).await;
                     } else if let Err(ended) = subscribing.next(&client) {
                         return ended;
                     }
                 }
-                Event::Incoming(_) | Event::Outgoing(Outgoing::Publish(_)) | Event::Outgoing(_) => {}
+                Event::Incoming(_) | Event::Outgoing(Outgoing::Publish(_)) | Event::Outgoing(_) => {
+                }
             }
             polling.set(poll(events));
         }
     }
 
     async fn publish(&self, publish: rumqttc::Publish) {
-        self.hand_on(Arrived::Publish { topic: publish.topic, payload: publish.payload, retained: publish.retain }).await;
+        self.hand_on(Arrived::Publish {
+            topic: publish.topic,
+            payload: publish.payload,
+            retained: publish.retain,
+        })
+        .await;
     }
 
     async fn hand_on(&self, arrived: Arrived) {
@@ -186,14 +208,24 @@ struct Subscribing {
 
 impl Subscribing {
     fn new(filters: &[String]) -> Self {
-        Self { waiting: filters.iter().cloned().collect(), ..Self::default() }
+        Self {
+            waiting: filters.iter().cloned().collect(),
+            ..Self::default()
+        }
     }
 
     fn next(&mut self, client: &AsyncClient) -> Result<(), Ended> {
-        self.asked = self.waiting.drain(..self.waiting.len().min(FILTERS_AT_ONCE)).collect();
-        let filters =
-            self.asked.iter().map(|path| rumqttc::SubscribeFilter { path: path.clone(), qos: QoS::AtLeastOnce });
-        client.try_subscribe_many(filters).map_err(|error| Ended::Broken(format!("cannot subscribe: {error}")))
+        self.asked = self
+            .waiting
+            .drain(..self.waiting.len().min(FILTERS_AT_ONCE))
+            .collect();
+        let filters = self.asked.iter().map(|path| rumqttc::SubscribeFilter {
+            path: path.clone(),
+            qos: QoS::AtLeastOnce,
+        });
+        client
+            .try_subscribe_many(filters)
+            .map_err(|error| Ended::Broken(format!("cannot subscribe: {error}")))
     }
 
     /// Reads the answer to the last packet; gives the filters refused. A code that is missing is a refusal.
@@ -221,8 +253,14 @@ mod tests {
 
     #[test]
     fn a_refused_filter_is_named_and_a_missing_code_counts_as_a_refusal() {
-        let mut subscribing = Subscribing { asked: ["a", "b", "c"].map(String::from).to_vec(), ..Subscribing::default() };
-        let codes = [SubscribeReasonCode::Success(QoS::AtLeastOnce), SubscribeReasonCode::Failure];
+        let mut subscribing = Subscribing {
+            asked: ["a", "b", "c"].map(String::from).to_vec(),
+            ..Subscribing::default()
+        };
+        let codes = [
+            SubscribeReasonCode::Success(QoS::AtLeastOnce),
+            SubscribeReasonCode::Failure,
+        ];
         assert_eq!(subscribing.answered(&codes), ["b", "c"]);
         assert_eq!((subscribing.granted, subscribing.is_done()), (1, true));
     }

@@ -25,8 +25,8 @@ use std::time::Duration;
 
 use rumqttc::mqttbytes::Error as PacketError;
 use rumqttc::{
-    ConnectReturnCode, ConnectionError, Event, EventLoop, MqttOptions, NetworkOptions, StateError, TlsConfiguration,
-    Transport,
+    ConnectReturnCode, ConnectionError, Event, EventLoop, MqttOptions, NetworkOptions, StateError,
+    TlsConfiguration, Transport,
 };
 
 /// Largest packet taken in, bytes.
@@ -74,7 +74,9 @@ impl Settings {
             options.set_credentials(user, password);
         }
         if let Some(tls) = &self.tls {
-            options.set_transport(Transport::tls_with_config(TlsConfiguration::Rustls(Arc::clone(tls))));
+            options.set_transport(Transport::tls_with_config(TlsConfiguration::Rustls(
+                Arc::clone(tls),
+            )));
         }
         options
     }
@@ -108,7 +110,9 @@ pub enum Ended {
     #[error("the broker refused us: {0}; check user name, password and the broker's access rules")]
     Refused(String),
     /// A packet larger than [`LARGEST_IN`] came in.
-    #[error("a packet of {0} bytes came in, more than {LARGEST_IN}; let its sensor send shorter blocks")]
+    #[error(
+        "a packet of {0} bytes came in, more than {LARGEST_IN}; let its sensor send shorter blocks"
+    )]
     TooLarge(usize),
     /// Nothing came for three keep-alives.
     #[error("nothing came from the broker for three keep-alives; check the network")]
@@ -122,25 +126,35 @@ impl From<ConnectionError> for Ended {
     fn from(error: ConnectionError) -> Self {
         match error {
             ConnectionError::ConnectionRefused(code) => match code {
-                ConnectReturnCode::BadUserNamePassword => Self::Refused("bad user name or password".into()),
+                ConnectReturnCode::BadUserNamePassword => {
+                    Self::Refused("bad user name or password".into())
+                }
                 ConnectReturnCode::NotAuthorized => Self::Refused("not authorised".into()),
                 ConnectReturnCode::BadClientId => Self::Refused("client id not accepted".into()),
-                ConnectReturnCode::RefusedProtocolVersion => Self::Refused("it does not speak MQTT 3.1.1".into()),
+                ConnectReturnCode::RefusedProtocolVersion => {
+                    Self::Refused("it does not speak MQTT 3.1.1".into())
+                }
                 ConnectReturnCode::Success | ConnectReturnCode::ServiceUnavailable => {
                     Self::Broken("the broker is not ready for connections".into())
                 }
             },
-            ConnectionError::MqttState(StateError::Deserialization(PacketError::PayloadSizeLimitExceeded(bytes))) => {
-                Self::TooLarge(bytes)
-            }
+            ConnectionError::MqttState(StateError::Deserialization(
+                PacketError::PayloadSizeLimitExceeded(bytes),
+            )) => Self::TooLarge(bytes),
             ConnectionError::MqttState(state) => Self::Broken(state.to_string()),
-            ConnectionError::NetworkTimeout => {
-                Self::Broken(format!("no answer within {CONNECT_WITHIN_S} s; check host, port and network"))
+            ConnectionError::NetworkTimeout => Self::Broken(format!(
+                "no answer within {CONNECT_WITHIN_S} s; check host, port and network"
+            )),
+            ConnectionError::FlushTimeout => {
+                Self::Broken("the broker takes no more bytes; check its load".into())
             }
-            ConnectionError::FlushTimeout => Self::Broken("the broker takes no more bytes; check its load".into()),
-            ConnectionError::Tls(error) => Self::Broken(format!("TLS: {error}; check ca_file and the host name")),
+            ConnectionError::Tls(error) => {
+                Self::Broken(format!("TLS: {error}; check ca_file and the host name"))
+            }
             ConnectionError::Io(error) => Self::Broken(error.to_string()),
-            ConnectionError::NotConnAck(_) => Self::Broken("the other side does not answer as a broker would".into()),
+            ConnectionError::NotConnAck(_) => {
+                Self::Broken("the other side does not answer as a broker would".into())
+            }
             ConnectionError::RequestsDone => Self::Broken("the client was dropped".into()),
         }
     }
@@ -159,5 +173,7 @@ pub enum Standing {
 
 /// A stable number from a name, to seed jitter with (FNV-1a, 64 bit).
 pub(crate) fn seed(name: &str) -> u64 {
-    name.bytes().fold(0xcbf2_9ce4_8422_2325, |hash, byte| (hash ^ u64::from(byte)).wrapping_mul(0x0100_0000_01b3))
+    name.bytes().fold(0xcbf2_9ce4_8422_2325, |hash, byte| {
+        (hash ^ u64::from(byte)).wrapping_mul(0x0100_0000_01b3)
+    })
 }

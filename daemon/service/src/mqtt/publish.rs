@@ -41,7 +41,9 @@ pub struct Publish {
 
 impl std::fmt::Debug for Publish {
     fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
-        f.debug_struct("Publish").field("client_id", &self.client_id).finish_non_exhaustive()
+        f.debug_struct("Publish")
+            .field("client_id", &self.client_id)
+            .finish_non_exhaustive()
     }
 }
 
@@ -55,11 +57,15 @@ impl Publish {
             let (wait, standing) = match &ended {
                 Ended::Stopped => return,
                 Ended::Refused(why) => (backoff.refused(), Standing::Refused(why.clone())),
-                Ended::TooLarge(_) | Ended::Silent | Ended::Broken(_) => {
-                    (backoff.after(began.elapsed()), Standing::Down(ended.to_string()))
-                }
+                Ended::TooLarge(_) | Ended::Silent | Ended::Broken(_) => (
+                    backoff.after(began.elapsed()),
+                    Standing::Down(ended.to_string()),
+                ),
             };
-            tracing::warn!("publish connection: {ended}; next try in {:.1} s", wait.as_secs_f64());
+            tracing::warn!(
+                "publish connection: {ended}; next try in {:.1} s",
+                wait.as_secs_f64()
+            );
             self.tell(standing).await;
             pause(wait).await;
         }
@@ -68,7 +74,12 @@ impl Publish {
     async fn connection(&mut self) -> Ended {
         let mut options = self.settings.options(&self.client_id, true);
         let will = (self.will)();
-        options.set_last_will(LastWill::new(will.topic, will.payload, QoS::AtLeastOnce, true));
+        options.set_last_will(LastWill::new(
+            will.topic,
+            will.payload,
+            QoS::AtLeastOnce,
+            true,
+        ));
         let (client, mut events) = AsyncClient::new(options, usize::from(PACKET_IDS));
         events.set_network_options(network());
         let silence = self.settings.silence();
@@ -104,14 +115,22 @@ impl Publish {
                             return ended;
                         }
                     }
-                    return if leaving { Ended::Stopped } else { error.into() };
+                    return if leaving {
+                        Ended::Stopped
+                    } else {
+                        error.into()
+                    };
                 }
             };
             if matches!(event, Event::Incoming(_)) {
                 last = Moment::now();
             }
             if let Event::Incoming(Incoming::ConnAck(_)) = event {
-                tracing::info!("publish connected to {}:{}", self.settings.host, self.settings.port);
+                tracing::info!(
+                    "publish connected to {}:{}",
+                    self.settings.host,
+                    self.settings.port
+                );
                 self.outbox.lock().connected();
                 up = true;
                 self.tell(Standing::Up).await;
@@ -128,11 +147,17 @@ impl Publish {
 
     fn hand_over(&self, client: &AsyncClient, window: &mut Window) -> Result<(), Ended> {
         while window.has_room() {
-            let Some(message) = self.outbox.lock().next() else { return Ok(()) };
+            let Some(message) = self.outbox.lock().next() else {
+                return Ok(());
+            };
             let payload: Vec<u8> = message.payload.into();
-            if let Err(error) = client.try_publish(message.topic, QoS::AtLeastOnce, message.retain, payload) {
+            if let Err(error) =
+                client.try_publish(message.topic, QoS::AtLeastOnce, message.retain, payload)
+            {
                 self.outbox.lock().returned(message.id);
-                return Err(Ended::Broken(format!("cannot hand a message over: {error}")));
+                return Err(Ended::Broken(format!(
+                    "cannot hand a message over: {error}"
+                )));
             }
             window.handed(message.id);
         }
@@ -142,9 +167,9 @@ impl Publish {
     fn settle(&self, event: &Event, window: &mut Window) -> Result<(), Ended> {
         let done = match event {
             Event::Outgoing(Outgoing::Publish(packet)) => window.written(*packet),
-            Event::Incoming(Incoming::PubAck(ack)) => {
-                window.acknowledged(ack.pkid).map(|id| self.outbox.lock().acknowledged(id))
-            }
+            Event::Incoming(Incoming::PubAck(ack)) => window
+                .acknowledged(ack.pkid)
+                .map(|id| self.outbox.lock().acknowledged(id)),
             Event::Outgoing(_) | Event::Incoming(_) => Ok(()),
         };
         done.map_err(|fault| Ended::Broken(fault.to_string()))

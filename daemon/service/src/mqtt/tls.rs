@@ -37,8 +37,13 @@ pub fn client(ca_file: Option<&Path>) -> Result<Arc<ClientConfig>, TlsFault> {
     let mut roots = RootCertStore::empty();
     let place = match ca_file {
         Some(path) => {
-            let fault = |cause: String| TlsFault::CaFile { path: path.to_owned(), cause };
-            for certificate in CertificateDer::pem_file_iter(path).map_err(|e| fault(e.to_string()))? {
+            let fault = |cause: String| TlsFault::CaFile {
+                path: path.to_owned(),
+                cause,
+            };
+            for certificate in
+                CertificateDer::pem_file_iter(path).map_err(|e| fault(e.to_string()))?
+            {
                 let certificate = certificate.map_err(|e| fault(e.to_string()))?;
                 roots.add(certificate).map_err(|e| fault(e.to_string()))?;
             }
@@ -74,6 +79,9 @@ mod tests {
     fn a_missing_ca_file_is_named_with_its_remedy() {
         let fault = client(Some(Path::new("/nowhere/ca.pem"))).expect_err("there is no such file");
         let text = fault.to_string();
-        assert!(text.contains("/nowhere/ca.pem") && text.contains("ca_file"), "{text}");
+        assert!(
+            text.contains("/nowhere/ca.pem") && text.contains("ca_file"),
+            "{text}"
+        );
     }
 }

@@ -48,7 +48,12 @@ pub enum OutOfStep {
 impl Window {
     /// Whether one more may be handed over.
     pub fn has_room(&self) -> bool {
-        let oldest = self.written.values().map(|(_, count)| *count).min().unwrap_or(self.count);
+        let oldest = self
+            .written
+            .values()
+            .map(|(_, count)| *count)
+            .min()
+            .unwrap_or(self.count);
         let span = self.count - oldest + self.handed.len() as u64;
         self.handed.len() + self.written.len() < WINDOW && span + 1 < u64::from(PACKET_IDS)
     }
@@ -71,7 +76,10 @@ impl Window {
         if self.written.contains_key(&packet) {
             return Err(OutOfStep::Twice { packet });
         }
-        let id = self.handed.pop_front().ok_or(OutOfStep::Written { packet })?;
+        let id = self
+            .handed
+            .pop_front()
+            .ok_or(OutOfStep::Written { packet })?;
         self.written.insert(packet, (id, self.count));
         self.count += 1;
         Ok(())
@@ -82,7 +90,10 @@ impl Window {
     /// # Errors
     /// [`OutOfStep`] when no such packet is on its way.
     pub fn acknowledged(&mut self, packet: u16) -> Result<u64, OutOfStep> {
-        self.written.remove(&packet).map(|(id, _)| id).ok_or(OutOfStep::Acknowledged { packet })
+        self.written
+            .remove(&packet)
+            .map(|(id, _)| id)
+            .ok_or(OutOfStep::Acknowledged { packet })
     }
 }
 
@@ -99,7 +110,14 @@ mod tests {
         for packet in 1..=3 {
             assert_eq!(window.written(packet), Ok(()));
         }
-        assert_eq!([window.acknowledged(2), window.acknowledged(1), window.acknowledged(3)], [Ok(71), Ok(70), Ok(72)]);
+        assert_eq!(
+            [
+                window.acknowledged(2),
+                window.acknowledged(1),
+                window.acknowledged(3)
+            ],
+            [Ok(71), Ok(70), Ok(72)]
+        );
         assert!(window.is_empty());
     }
 
@@ -137,7 +155,10 @@ mod tests {
     fn packets_that_were_never_handed_over_are_out_of_step() {
         let mut window = Window::default();
         assert_eq!(window.written(4), Err(OutOfStep::Written { packet: 4 }));
-        assert_eq!(window.acknowledged(4), Err(OutOfStep::Acknowledged { packet: 4 }));
+        assert_eq!(
+            window.acknowledged(4),
+            Err(OutOfStep::Acknowledged { packet: 4 })
+        );
         window.handed(1);
         window.handed(2);
         assert_eq!(window.written(4), Ok(()));

@@ -107,9 +107,22 @@ impl Memory {
 
     fn make_room(&mut self, kept: &mut Kept) {
         while self.bytes > self.capacity {
-            let Some(oldest) = self.letters.keys().copied().find(|id| !self.on_way.contains(id)) else { return };
-            let Some(letter) = self.remove(oldest) else { return };
-            match kept.dropped.iter_mut().find(|(topic, _)| *topic == letter.topic) {
+            let Some(oldest) = self
+                .letters
+                .keys()
+                .copied()
+                .find(|id| !self.on_way.contains(id))
+            else {
+                return;
+            };
+            let Some(letter) = self.remove(oldest) else {
+                return;
+            };
+            match kept
+                .dropped
+                .iter_mut()
+                .find(|(topic, _)| *topic == letter.topic)
+            {
                 Some((_, count)) => *count += 1,
                 None => kept.dropped.push((letter.topic, 1)),
             }
@@ -120,15 +133,26 @@ impl Memory {
         let id = self.ready.pop_first()?;
         let letter = self.letters.get(&id)?;
         self.on_way.insert(id);
-        Some(Sending { id, topic: letter.topic.clone(), payload: letter.payload.clone(), retain: false })
+        Some(Sending {
+            id,
+            topic: letter.topic.clone(),
+            payload: letter.payload.clone(),
+            retain: false,
+        })
     }
 
     fn next_state(&mut self) -> Option<Sending> {
         let (_, topic) = self.changed.pop_first()?;
         let id = self.id();
         let state = self.states.get(&topic)?;
-        self.states_on_way.insert(id, (topic.clone(), state.version));
-        Some(Sending { id, topic, payload: state.payload.clone(), retain: true })
+        self.states_on_way
+            .insert(id, (topic.clone(), state.version));
+        Some(Sending {
+            id,
+            topic,
+            payload: state.payload.clone(),
+            retain: true,
+        })
     }
 }
 
@@ -142,11 +166,30 @@ impl Outbox for Memory {
                 {
                     kept.too_large.push(topic);
                 }
-                Message::Letter { lane, topic, payload } => self.add(Letter { lane, topic, payload }),
-                Message::State { rank, topic, payload } => {
+                Message::Letter {
+                    lane,
+                    topic,
+                    payload,
+                } => self.add(Letter {
+                    lane,
+                    topic,
+                    payload,
+                }),
+                Message::State {
+                    rank,
+                    topic,
+                    payload,
+                } => {
                     let version = self.id();
                     self.changed.insert((rank, topic.clone()));
-                    self.states.insert(topic, State { rank, payload, version });
+                    self.states.insert(
+                        topic,
+                        State {
+                            rank,
+                            payload,
+                            version,
+                        },
+                    );
                 }
             }
         }
@@ -156,14 +199,26 @@ impl Outbox for Memory {
 
     fn connected(&mut self) {
         self.on_way.clear();
-        self.ready = self.lanes.values().filter_map(|lane| lane.front().copied()).collect();
+        self.ready = self
+            .lanes
+            .values()
+            .filter_map(|lane| lane.front().copied())
+            .collect();
         self.states_on_way.clear();
-        self.changed = self.states.iter().map(|(topic, state)| (state.rank, topic.clone())).collect();
+        self.changed = self
+            .states
+            .iter()
+            .map(|(topic, state)| (state.rank, topic.clone()))
+            .collect();
         self.state_in_turn = true;
     }
 
     fn next(&mut self) -> Option<Sending> {
-        let first = if self.state_in_turn { self.next_state() } else { self.next_letter() };
+        let first = if self.state_in_turn {
+            self.next_state()
+        } else {
+            self.next_letter()
+        };
         let sending = match first {
             Some(sending) => Some(sending),
             None if self.state_in_turn => self.next_letter(),
@@ -181,7 +236,11 @@ impl Outbox for Memory {
             return;
         };
         // An emptied topic is done with once the broker knows; anything newer goes on by itself.
-        if self.states.get(&topic).is_some_and(|state| state.version == version && state.payload.is_empty()) {
+        if self
+            .states
+            .get(&topic)
+            .is_some_and(|state| state.version == version && state.payload.is_empty())
+        {
             self.states.remove(&topic);
         }
     }

@@ -115,14 +115,19 @@ pub struct Shared {
 
 impl std::fmt::Debug for Shared {
     fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
-        f.debug_struct("Shared").field("waiting", &self.lock().waiting()).finish_non_exhaustive()
+        f.debug_struct("Shared")
+            .field("waiting", &self.lock().waiting())
+            .finish_non_exhaustive()
     }
 }
 
 impl Shared {
     /// Shares `outbox`.
     pub fn new(outbox: Box<dyn Outbox>) -> Self {
-        Self { inside: Arc::new(Mutex::new(outbox)), changed: Arc::new(Notify::new()) }
+        Self {
+            inside: Arc::new(Mutex::new(outbox)),
+            changed: Arc::new(Notify::new()),
+        }
     }
 
     /// Keeps `messages` and wakes the publisher.

@@ -39,16 +39,25 @@ impl Summary {
 
     /// A payload was refused.
     pub(super) fn refused(&mut self, topic: &str, refusal: &Refusal) {
-        let entry =
-            self.refusals.entry(refusal.reason.code()).or_insert_with(|| (0, format!("first on {topic}: {refusal}")));
+        let entry = self
+            .refusals
+            .entry(refusal.reason.code())
+            .or_insert_with(|| (0, format!("first on {topic}: {refusal}")));
         entry.0 += 1;
     }
 
     /// An event was printed.
     pub(super) fn event(&mut self, event: &Event) {
         let watch = event.finding.watch.as_deref().unwrap_or("asset");
-        let asset = event.header.asset.as_ref().map_or("", |asset| asset.as_str());
-        *self.events.entry(format!("{asset} {watch} {}", event.transition)).or_default() += 1;
+        let asset = event
+            .header
+            .asset
+            .as_ref()
+            .map_or("", |asset| asset.as_str());
+        *self
+            .events
+            .entry(format!("{asset} {watch} {}", event.transition))
+            .or_default() += 1;
     }
 
     /// The recording ran under another configuration.
@@ -88,13 +97,20 @@ impl Summary {
             None => writeln!(to, "  no record")?,
         }
         if let Some(hash) = &self.other_plan {
-            writeln!(to, "  recorded under configuration {hash}, rehearsed under another")?;
+            writeln!(
+                to,
+                "  recorded under configuration {hash}, rehearsed under another"
+            )?;
         }
         for point in &self.points {
             writeln!(to, "  {point}")?;
         }
         if let Some(topic) = &self.first_unknown {
-            writeln!(to, "  {} messages on topics not in the configuration, first {topic}", self.unknown)?;
+            writeln!(
+                to,
+                "  {} messages on topics not in the configuration, first {topic}",
+                self.unknown
+            )?;
         }
         for (reason, (count, first)) in &self.refusals {
             writeln!(to, "  {count} payloads refused, {reason}; {first}")?;
