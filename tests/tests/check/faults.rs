@@ -159,6 +159,35 @@ fn a_race_line_the_frame_cannot_resolve_is_refused_with_the_frame_that_would_do(
 }
 
 #[test]
+fn what_cannot_work_is_refused_with_what_would_do() {
+    let bearing = "bearing = { outer = 3.585, inner = 5.415, element = 4.714, cage = 0.398 }";
+    let watch = |measure: &str| {
+        format!("watch = [{{ name = \"w\", measure = \"{measure}\", alert = 15 }}]")
+    };
+    let cases = [
+        ("1482", "reading_every = \"1s\"", "rate_hz = 12000\nframe = 16384".to_owned(), "at least 1.365 s, one frame of 16384 samples"),
+        ("120", "reading_every = \"4s\"", String::new(), "at least 5 s, 4 periods of velocity_from_hz = 0.8"),
+        ("1482", "", "rate_hz = 12000\nenvelope_hz = [2000, 2040]".to_owned(), "at least 46.9 Hz wide, 32 spectral lines"),
+        ("1482", "", "rate_hz = 12000\nband = [{ name = \"b\", hz = [100, 103], quantity = \"velocity\" }]".to_owned(), "at least 5.86 Hz, 4 spectral lines"),
+        ("1482", "", "rate_hz = 12000\nband = [{ name = \"b\", orders = [200, 300], quantity = \"velocity\" }]".to_owned(), "up to half the rate, 6000 Hz"),
+        ("1482", "", format!("rate_hz = 4000\n{}", watch("high_band_rms")), "a rate of at least 5120 samples/s"),
+        ("1482", "", format!("{bearing}\nenvelope_hz = [2000, 2500]\n{}", watch("bearing.inner")), "a band at least 535 Hz wide would do"),
+        ("100", "", format!("{bearing}\nrate_hz = 102400\n{}", watch("bearing.cage")), "no frame does at this rate"),
+    ];
+    for (speed, asset, point, remedy) in cases {
+        let said = check(&format!(
+            "site = \"harbour\"\n[[asset]]\nid = \"P-1\"\nspeed = {speed}\n{asset}\n[[asset.point]]\nid = \"de\"\n{point}\n"
+        ));
+        assert!(
+            said.err.contains(remedy) && said.err.contains("cfg-cannot-resolve"),
+            "{remedy}:\n{}{}",
+            said.out,
+            said.err
+        );
+    }
+}
+
+#[test]
 fn persistence_is_a_time_a_count_or_m_of_n_and_nothing_else() {
     let with = |text: &str| {
         check(&format!(

@@ -3,7 +3,7 @@
 //! In: an asset whose points and watches are sound by themselves. Out: one fault for each answer that
 //! cannot be had, with what would do instead. What depends on the sample rate is judged only where the
 //! rate is declared; elsewhere the first block tells it and the analysis says what it cannot resolve.
-//! Checked by `tests` beside it and, for the noise, by the `noise.vel` figures quoted there.
+//! Checked by `tests/check.rs`: `what_cannot_work_is_refused_with_what_would_do`; the noise by the test here.
 
 use alloc::{format, string::String, vec::Vec};
 

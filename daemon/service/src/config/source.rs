@@ -201,8 +201,8 @@ mod tests {
         );
         let long = sources.as_written(Place::File {
             file,
-            start: 17,
-            end: 99,
+            start: 16,
+            end: 98,
         });
         assert_eq!(long.chars().count(), 64);
     }
