@@ -23,15 +23,23 @@ impl Broker {
 
     /// Starts one with further lines in its configuration.
     pub fn with(lines: &str) -> Self {
-        let folder = folder("broker");
-        // The port may be taken between here and the broker's start; then the wait below says so.
-        let port = TcpListener::bind("127.0.0.1:0")
+        Self::on(Self::free_port(), lines)
+    }
+
+    /// A port nobody listens on; it may be taken before it is used, and then the broker does not come up.
+    pub fn free_port() -> u16 {
+        TcpListener::bind("127.0.0.1:0")
             .and_then(|listener| listener.local_addr())
             .expect("127.0.0.1 has a free port")
-            .port();
+            .port()
+    }
+
+    /// Starts one on this port with further lines in its configuration.
+    pub fn on(port: u16, lines: &str) -> Self {
+        let folder = folder("broker");
         let text = format!(
-            "listener {port} 127.0.0.1\nallow_anonymous true\nset_tcp_nodelay true\npersistence false\n\
-             max_inflight_messages 0\nmax_queued_messages 100000\nlog_dest stderr\n{lines}"
+            "allow_anonymous true\nset_tcp_nodelay true\npersistence false\nmax_inflight_messages 0\n\
+             max_queued_messages 100000\nlog_dest stderr\nlistener {port} 127.0.0.1\n{lines}"
         );
         fs::write(folder.join("mosquitto.conf"), text).expect("the folder takes a file");
         let mut broker = Self {
@@ -46,11 +54,6 @@ impl Broker {
     /// Its port.
     pub const fn port(&self) -> u16 {
         self.port
-    }
-
-    /// Its folder, for files that its configuration names.
-    pub fn folder(&self) -> &Path {
-        &self.folder
     }
 
     /// Starts it again on its port, with nothing remembered.

@@ -22,8 +22,7 @@ impl Daemon {
         let (path, log) = (folder.join("site.toml"), folder.join("log"));
         fs::write(&path, config).expect("the folder takes a file");
         let stderr = File::create(&log).expect("the folder takes a log");
-        let child = Command::new(program())
-            .arg("run")
+        let child = command("run")
             .arg(&path)
             .stderr(stderr)
             .spawn()
@@ -88,12 +87,23 @@ impl Drop for Daemon {
     }
 }
 
+/// The program with nothing of ours in its environment but what a test gives it.
+fn command(name: &str) -> Command {
+    let mut command = Command::new(program());
+    command.arg(name);
+    for (variable, _) in env::vars_os() {
+        if variable.to_string_lossy().starts_with("HUMWARD_") {
+            command.env_remove(variable);
+        }
+    }
+    command
+}
+
 /// Rehearses recordings under a configuration.
 pub fn rehearse(config: &str, recordings: &[&Path]) -> Output {
     let path = folder("rehearse").join("site.toml");
     fs::write(&path, config).expect("the folder takes a file");
-    Command::new(program())
-        .arg("rehearse")
+    command("rehearse")
         .arg(&path)
         .args(recordings)
         .output()

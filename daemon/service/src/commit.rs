@@ -54,14 +54,21 @@ impl Committer {
     pub fn run(self) {
         let mut overflow: Option<Overflow> = None;
         while let Ok(first) = self.from.recv() {
-            let mut at = Arrival::from_ns(i64::MIN);
-            let mut messages = Vec::new();
-            for outcome in std::iter::once(first).chain(self.from.try_iter().take(CHANNEL)) {
-                at = at.max(self.messages(outcome, &mut messages));
-            }
-            let kept = self.outbox.keep(messages);
-            self.account(at, kept, &mut overflow);
+            let outcomes = std::iter::once(first)
+                .chain(self.from.try_iter().take(CHANNEL))
+                .collect();
+            self.keep(outcomes, &mut overflow);
         }
+    }
+
+    fn keep(&self, outcomes: Vec<Outcome>, overflow: &mut Option<Overflow>) {
+        let mut at = Arrival::from_ns(i64::MIN);
+        let mut messages = Vec::new();
+        for outcome in outcomes {
+            at = at.max(self.messages(outcome, &mut messages));
+        }
+        let kept = self.outbox.keep(messages);
+        self.account(at, kept, overflow);
     }
 
     fn messages(&self, outcome: Outcome, messages: &mut Vec<Message>) -> Arrival {
@@ -159,3 +166,6 @@ fn log(action: &Action) {
         );
     }
 }
+
+#[cfg(test)]
+mod tests;

@@ -384,3 +384,6 @@ fn link(standing: &Standing) -> Link {
         Standing::Refused(_) => Link::Refused,
     }
 }
+
+#[cfg(test)]
+mod tests;

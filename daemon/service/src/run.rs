@@ -6,7 +6,7 @@
 
 use std::collections::BTreeMap;
 use std::future::Future;
-use std::io;
+use std::io::{self, IsTerminal as _};
 use std::sync::Arc;
 use std::sync::mpsc::SyncSender;
 use std::thread::JoinHandle;
@@ -70,14 +70,15 @@ impl RunError {
     }
 }
 
-/// Starts the log: lines on stderr, `info` and above unless `RUST_LOG` says otherwise.
+/// Starts the log: lines on stderr, `info` and above unless `HUMWARD_LOG` says otherwise.
 pub fn log() {
     use tracing_subscriber::EnvFilter;
-    let filter = EnvFilter::try_from_default_env().unwrap_or_else(|_| EnvFilter::new("info"));
+    let filter = EnvFilter::try_from_env("HUMWARD_LOG").unwrap_or_else(|_| EnvFilter::new("info"));
     let started = tracing_subscriber::fmt()
         .with_env_filter(filter)
         .with_writer(io::stderr)
         .with_target(false)
+        .with_ansi(io::stderr().is_terminal())
         .try_init();
     if started.is_err() {
         tracing::debug!("the log had been started before");

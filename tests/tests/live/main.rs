@@ -1,6 +1,9 @@
 //! The daemon from the outside: real program, real broker, real recordings.
+#![expect(clippy::expect_used, reason = "a test stops at its first surprise")]
 
+mod access;
 mod broker_lost;
+mod faster;
 mod lifecycle;
 mod real_recordings;
 mod refusals;
