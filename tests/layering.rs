@@ -9,7 +9,17 @@ use std::{
 /// The pure crates, each with every dependency it may have, and the crates that may not know each other.
 const PURE: [(&str, &[&str]); 3] = [
     ("daemon/signal", &["realfft"]),
-    ("daemon/wire", &["base64", "jiff", "minicbor", "schemars", "serde", "serde_json"]),
+    (
+        "daemon/wire",
+        &[
+            "base64",
+            "jiff",
+            "minicbor",
+            "schemars",
+            "serde",
+            "serde_json",
+        ],
+    ),
     ("daemon/monitor", &["humward-signal", "humward-wire"]),
 ];
 /// Longest file of code, in lines.
@@ -18,15 +28,24 @@ const LONGEST: usize = 500;
 const MEDIAN: usize = 200;
 
 fn root() -> PathBuf {
-    Path::new(env!("CARGO_MANIFEST_DIR")).parent().map(Path::to_path_buf).unwrap()
+    Path::new(env!("CARGO_MANIFEST_DIR"))
+        .parent()
+        .map(Path::to_path_buf)
+        .unwrap()
 }
 
 fn manifest(folder: &str) -> toml::Table {
-    fs::read_to_string(root().join(folder).join("Cargo.toml")).unwrap().parse().unwrap()
+    fs::read_to_string(root().join(folder).join("Cargo.toml"))
+        .unwrap()
+        .parse()
+        .unwrap()
 }
 
 fn keys(table: Option<&toml::Value>) -> BTreeSet<String> {
-    table.and_then(toml::Value::as_table).map(|table| table.keys().cloned().collect()).unwrap_or_default()
+    table
+        .and_then(toml::Value::as_table)
+        .map(|table| table.keys().cloned().collect())
+        .unwrap_or_default()
 }
 
 fn code_files(under: &Path, into: &mut Vec<PathBuf>) {
@@ -47,9 +66,15 @@ fn a_pure_crate_depends_on_its_list_and_on_nothing_else() {
         let manifest = manifest(folder);
         let found = keys(manifest.get("dependencies"));
         let allowed = allowed.iter().map(ToString::to_string).collect();
-        assert_eq!(found, allowed, "{folder}: a pure crate's dependencies are listed in tests/layering.rs");
+        assert_eq!(
+            found, allowed,
+            "{folder}: a pure crate's dependencies are listed in tests/layering.rs"
+        );
         for section in ["build-dependencies", "target"] {
-            assert!(manifest.get(section).is_none(), "{folder} has {section}: a pure crate builds everywhere alike");
+            assert!(
+                manifest.get(section).is_none(),
+                "{folder} has {section}: a pure crate builds everywhere alike"
+            );
         }
     }
 }
@@ -58,14 +83,23 @@ fn a_pure_crate_depends_on_its_list_and_on_nothing_else() {
 fn a_pure_crate_is_no_std_and_names_neither_clock_nor_file_nor_socket() {
     for (folder, _) in PURE {
         let lib = fs::read_to_string(root().join(folder).join("src/lib.rs")).unwrap();
-        assert!(lib.lines().any(|line| line == "#![no_std]"), "{folder}/src/lib.rs lacks #![no_std]");
+        assert!(
+            lib.lines().any(|line| line == "#![no_std]"),
+            "{folder}/src/lib.rs lacks #![no_std]"
+        );
         let mut files = Vec::new();
         code_files(&root().join(folder).join("src"), &mut files);
         for file in files {
             let text = fs::read_to_string(&file).unwrap();
-            let is_test = file.components().any(|part| part.as_os_str() == "tests.rs" || part.as_os_str() == "tests");
+            let is_test = file
+                .components()
+                .any(|part| part.as_os_str() == "tests.rs" || part.as_os_str() == "tests");
             let code = text.split("#[cfg(test)]").next().unwrap_or_default();
-            assert!(is_test || !code.contains("std::"), "{} names std", file.display());
+            assert!(
+                is_test || !code.contains("std::"),
+                "{} names std",
+                file.display()
+            );
         }
     }
 }
@@ -76,11 +110,17 @@ fn the_simulator_never_sees_how_the_daemon_measures() {
     if folder.join("Cargo.toml").exists() {
         let found = keys(manifest("simulator").get("dependencies"));
         for forbidden in ["humward-signal", "humward-monitor", "humward"] {
-            assert!(!found.contains(forbidden), "simulator depends on {forbidden}");
+            assert!(
+                !found.contains(forbidden),
+                "simulator depends on {forbidden}"
+            );
         }
     }
     let wire = keys(manifest("daemon/wire").get("dependencies"));
-    assert!(wire.iter().all(|name| !name.starts_with("humward")), "wire depends on {wire:?}");
+    assert!(
+        wire.iter().all(|name| !name.starts_with("humward")),
+        "wire depends on {wire:?}"
+    );
 }
 
 #[test]
@@ -90,11 +130,25 @@ fn every_crate_takes_the_lints_of_the_workspace_and_each_dependency_says_why() {
     let members = workspace["workspace"]["members"].as_array().unwrap();
     for member in members.iter().filter_map(toml::Value::as_str) {
         let manifest = manifest(member);
-        let inherits = manifest.get("lints").and_then(|lints| lints.get("workspace"));
-        assert_eq!(inherits.and_then(toml::Value::as_bool), Some(true), "{member} has lints of its own");
+        let inherits = manifest
+            .get("lints")
+            .and_then(|lints| lints.get("workspace"));
+        assert_eq!(
+            inherits.and_then(toml::Value::as_bool),
+            Some(true),
+            "{member} has lints of its own"
+        );
         for section in ["dependencies", "dev-dependencies"] {
-            for (name, value) in manifest.get(section).and_then(toml::Value::as_table).into_iter().flatten() {
-                assert!(value.get("workspace").is_some(), "{member}: {name} does not take the workspace's version");
+            for (name, value) in manifest
+                .get(section)
+                .and_then(toml::Value::as_table)
+                .into_iter()
+                .flatten()
+            {
+                assert!(
+                    value.get("workspace").is_some(),
+                    "{member}: {name} does not take the workspace's version"
+                );
             }
         }
     }
@@ -108,12 +162,25 @@ fn every_crate_takes_the_lints_of_the_workspace_and_each_dependency_says_why() {
         ("clippy", "wildcard_enum_match_arm"),
         ("clippy", "allow_attributes"),
     ] {
-        assert_eq!(lints[tool][lint].as_str(), Some("deny"), "{lint} is not denied");
+        assert_eq!(
+            lints[tool][lint].as_str(),
+            Some("deny"),
+            "{lint} is not denied"
+        );
     }
-    let dependencies = workspace_text.split("[workspace.dependencies]").nth(1).unwrap();
+    let dependencies = workspace_text
+        .split("[workspace.dependencies]")
+        .nth(1)
+        .unwrap();
     let dependencies = dependencies.split("\n[").next().unwrap_or_default();
-    for line in dependencies.lines().filter(|line| line.contains('=') && !line.starts_with("humward")) {
-        assert!(line.contains("} #") || line.contains("\" ") && line.contains('#'), "no reason beside: {line}");
+    for line in dependencies
+        .lines()
+        .filter(|line| line.contains('=') && !line.starts_with("humward"))
+    {
+        assert!(
+            line.contains("} #") || line.contains("\" ") && line.contains('#'),
+            "no reason beside: {line}"
+        );
     }
 }
 
@@ -128,20 +195,39 @@ fn no_file_of_code_passes_five_hundred_lines() {
     let length = |file: &PathBuf| fs::read_to_string(file).unwrap().lines().count();
     let mut lengths: Vec<usize> = files.iter().map(length).collect();
     let longest = files.iter().max_by_key(|file| length(file)).unwrap();
-    assert!(length(longest) <= LONGEST, "{} has {} lines", longest.display(), length(longest));
+    assert!(
+        length(longest) <= LONGEST,
+        "{} has {} lines",
+        longest.display(),
+        length(longest)
+    );
     lengths.sort_unstable();
     let median = lengths[lengths.len() / 2];
-    assert!(median <= MEDIAN, "the median file has {median} lines; split the growing ones");
+    assert!(
+        median <= MEDIAN,
+        "the median file has {median} lines; split the growing ones"
+    );
 }
 
 #[test]
 fn the_top_level_holds_what_it_is_meant_to_hold() {
     let allowed = [
-        "Cargo.toml", "Cargo.lock", "README.md", "DEVELOPERS.md", "daemon", "config", "deploy", "tests", "simulator",
+        "Cargo.toml",
+        "Cargo.lock",
+        "README.md",
+        "DEVELOPERS.md",
+        "daemon",
+        "config",
+        "deploy",
+        "tests",
+        "simulator",
         "target",
     ];
     for entry in fs::read_dir(root()).unwrap() {
         let name = entry.unwrap().file_name().to_string_lossy().into_owned();
-        assert!(name.starts_with('.') || allowed.contains(&name.as_str()), "{name} does not belong at the top level");
+        assert!(
+            name.starts_with('.') || allowed.contains(&name.as_str()),
+            "{name} does not belong at the top level"
+        );
     }
 }

@@ -18,8 +18,8 @@ use humward_monitor::{
     input::{Identity, Source},
     judge::{AssetJudge, Context},
     plan::{
-        AssetPlan, AssetSpec, Calibration, GroupPlan, Limits, Measure, Persistence, PointPlan, PointSpec, Quantity,
-        Race, RunningRule, SpeedRange, WatchPlan, WatchSpec,
+        AssetPlan, AssetSpec, Calibration, GroupPlan, Limits, Measure, Persistence, PointPlan,
+        PointSpec, Quantity, Race, RunningRule, SpeedRange, WatchPlan, WatchSpec,
     },
     reading::{Reading, ShaftSpeed},
     time::{Arrival, SignalTime, Span},
@@ -33,6 +33,8 @@ use humward_wire::{
 use realfft::RealFftPlanner;
 
 type Failure = Box<dyn Error>;
+/// One row's work: all blocks once.
+type Work<'a> = Work<'a>;
 
 const RATE_HZ: f64 = 25_600.0;
 const FRAME: usize = 8192;
@@ -42,18 +44,33 @@ const ROUNDS: usize = 15;
 
 fn main() -> Result<(), Failure> {
     let blocks = blocks();
-    let s16: Vec<Vec<u8>> = blocks.iter().map(|block| block::encode_cbor(block, SampleEncoding::S16)).collect();
-    let f32s: Vec<Vec<u8>> = blocks.iter().map(|block| block::encode_cbor(block, SampleEncoding::F32)).collect();
+    let s16: Vec<Vec<u8>> = blocks
+        .iter()
+        .map(|block| block::encode_cbor(block, SampleEncoding::S16))
+        .collect();
+    let f32s: Vec<Vec<u8>> = blocks
+        .iter()
+        .map(|block| block::encode_cbor(block, SampleEncoding::F32))
+        .collect();
     let json: Vec<Vec<u8>> = blocks.iter().map(block::encode_json).collect();
     let plan = plan()?;
-    let mut rows: Vec<(&str, Box<dyn FnMut() -> Result<(), Failure>>)> = vec![
+    let mut rows: Vec<(&str, Work<'_>)> = vec![
         ("compute floor: decode s16 + 2 windowed FFTs", floor(&s16)),
         ("decode CBOR, 16-bit typed array", decoding(&s16)),
         ("decode CBOR, 32-bit float typed array", decoding(&f32s)),
         ("decode JSON, numbers as text", decoding(&json)),
-        ("analysis: frames, spectra, envelope, velocity, statistics", analysing(&blocks, &plan)),
-        ("judge: 6 watches a reading of 10 s", judging(&blocks, &plan)?),
-        ("whole path in process: decode s16 + step", stepping(&s16, &plan)),
+        (
+            "analysis: frames, spectra, envelope, velocity, statistics",
+            analysing(&blocks, &plan),
+        ),
+        (
+            "judge: 5 watches, a reading of 10 s",
+            judging(&blocks, &plan)?,
+        ),
+        (
+            "whole path in process: decode s16 + step",
+            stepping(&s16, &plan),
+        ),
     ];
     let mut times = vec![Vec::new(); rows.len()];
     for _ in 0..ROUNDS {
@@ -64,10 +81,22 @@ fn main() -> Result<(), Failure> {
         }
     }
     let mut out = stdout().lock();
-    writeln!(out, "\nns per new sample at {RATE_HZ} samples/s, frame {FRAME}, median of {ROUNDS} rounds; x = times the floor of the same round")?;
+    writeln!(
+        out,
+        "\nns per new sample at {RATE_HZ} samples/s, frame {FRAME}, median of {ROUNDS} rounds; x = times the floor of the same round"
+    )?;
     for (row, (name, _)) in rows.iter().enumerate() {
-        let ratios = times[row].iter().zip(&times[0]).map(|(time, floor)| time / floor).collect();
-        writeln!(out, "{:9.3} ns {:7.2} x  {name}", median(times[row].clone()), median(ratios))?;
+        let ratios = times[row]
+            .iter()
+            .zip(&times[0])
+            .map(|(time, floor)| time / floor)
+            .collect();
+        writeln!(
+            out,
+            "{:9.3} ns {:7.2} x  {name}",
+            median(times[row].clone()),
+            median(ratios)
+        )?;
     }
     Ok(())
 }
@@ -81,18 +110,23 @@ fn median(mut values: Vec<f64>) -> f64 {
 fn blocks() -> Vec<Block> {
     let mut state = 1u64;
     let mut noise = move || {
-        state = state.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1_442_695_040_888_963_407);
+        state = state
+            .wrapping_mul(6_364_136_223_846_793_005)
+            .wrapping_add(1_442_695_040_888_963_407);
         (state >> 40) as f64 / f64::from(1u32 << 24) - 0.5
     };
     let sample = |i: usize, noise: f64| {
         let t = i as f64 / RATE_HZ;
         let burst = (-(t * 97.0).fract() * 20.0).exp() * (std::f64::consts::TAU * 4100.0 * t).sin();
-        let shaft = (std::f64::consts::TAU * 24.7 * t).sin() + 0.3 * (std::f64::consts::TAU * 148.2 * t).sin();
+        let shaft = (std::f64::consts::TAU * 24.7 * t).sin()
+            + 0.3 * (std::f64::consts::TAU * 148.2 * t).sin();
         (400.0 * noise + 300.0 * shaft + 200.0 * burst + 2048.0).round() as f32
     };
     (0..BLOCKS)
         .map(|k| Block {
-            at: Some(1_764_547_200_000_000_000 + (k * BLOCK) as i64 * 1_000_000_000 / RATE_HZ as i64),
+            at: Some(
+                1_764_547_200_000_000_000 + (k * BLOCK) as i64 * 1_000_000_000 / RATE_HZ as i64,
+            ),
             seq: Some(k as u64),
             rate_hz: RATE_HZ,
             unit: Unit::G,
@@ -111,7 +145,12 @@ fn id(text: &str) -> Result<Id, Failure> {
 }
 
 fn faults(faults: Vec<humward_monitor::plan::PlanFault>) -> Failure {
-    faults.iter().map(ToString::to_string).collect::<Vec<_>>().join("; ").into()
+    faults
+        .iter()
+        .map(ToString::to_string)
+        .collect::<Vec<_>>()
+        .join("; ")
+        .into()
 }
 
 fn plan() -> Result<Arc<GroupPlan>, Failure> {
@@ -126,7 +165,12 @@ fn plan() -> Result<Arc<GroupPlan>, Failure> {
         range_ms2: None,
         noise_ug_rthz: None,
         velocity_from_hz: 10.0,
-        bearing: Some(BearingOrders { outer: 3.5848, inner: 5.4152, cage: 0.398_28, element: 4.7135 }),
+        bearing: Some(BearingOrders {
+            outer: 3.5848,
+            inner: 5.4152,
+            cage: 0.398_28,
+            element: 4.7135,
+        }),
         envelope_hz: Some((2000.0, 8000.0)),
         bands: Vec::new(),
     })
@@ -136,8 +180,11 @@ fn plan() -> Result<Arc<GroupPlan>, Failure> {
         ("high", Measure::HighBandRms, Quantity::AccelerationRms),
         ("outer", Measure::Bearing(Race::Outer), Quantity::Decibel),
         ("inner", Measure::Bearing(Race::Inner), Quantity::Decibel),
-        ("element", Measure::Bearing(Race::Element), Quantity::Decibel),
-        ("cage", Measure::Bearing(Race::Cage), Quantity::Decibel),
+        (
+            "element",
+            Measure::Bearing(Race::Element),
+            Quantity::Decibel,
+        ),
     ];
     let watches = measures
         .into_iter()
@@ -160,8 +207,16 @@ fn plan() -> Result<Arc<GroupPlan>, Failure> {
     let asset = AssetPlan::new(AssetSpec {
         id: id("P-1")?,
         name: "bench pump".into(),
-        speed: SpeedRange { lowest: 1480.0, nominal: 1482.0, highest: 1500.0 },
-        running: RunningRule { from_rpm: 300.0, from_mm_s: 0.2, speed_valid: Span::from_secs(86_400) },
+        speed: SpeedRange {
+            lowest: 1480.0,
+            nominal: 1482.0,
+            highest: 1500.0,
+        },
+        running: RunningRule {
+            from_rpm: 300.0,
+            from_mm_s: 0.2,
+            speed_valid: Span::from_secs(86_400),
+        },
         zones: None,
         reading_every: Span::from_secs(10),
         status_every: Span::from_secs(300),
@@ -170,20 +225,32 @@ fn plan() -> Result<Arc<GroupPlan>, Failure> {
         watches,
     })
     .map_err(faults)?;
-    Ok(Arc::new(GroupPlan::new(id("bench")?, vec![asset]).map_err(faults)?))
+    Ok(Arc::new(
+        GroupPlan::new(id("bench")?, vec![asset]).map_err(faults)?,
+    ))
 }
 
-fn floor(payloads: &[Vec<u8>]) -> Box<dyn FnMut() -> Result<(), Failure> + '_> {
+fn floor(payloads: &[Vec<u8>]) -> Work<'_> {
     let fft = RealFftPlanner::<f32>::new().plan_fft_forward(FRAME);
-    let window: Vec<f32> =
-        (0..FRAME).map(|i| 0.5 - 0.5 * (std::f32::consts::TAU * i as f32 / FRAME as f32).cos()).collect();
+    let window: Vec<f32> = (0..FRAME)
+        .map(|i| 0.5 - 0.5 * (std::f32::consts::TAU * i as f32 / FRAME as f32).cos())
+        .collect();
     let mut block = Block::empty();
-    let (mut input, mut output, mut work) = (fft.make_input_vec(), fft.make_output_vec(), fft.make_scratch_vec());
+    let (mut input, mut output, mut work) = (
+        fft.make_input_vec(),
+        fft.make_output_vec(),
+        fft.make_scratch_vec(),
+    );
     let mut frame = vec![0.0f32; FRAME];
     let mut filled = 0;
     Box::new(move || {
         for payload in payloads {
-            block::decode_into(&mut block, payload, &Encoding::Cbor, &BlockLimits::default())?;
+            block::decode_into(
+                &mut block,
+                payload,
+                &Encoding::Cbor,
+                &BlockLimits::default(),
+            )?;
             let mut samples = block.samples.as_slice();
             while !samples.is_empty() {
                 let part = samples.len().min(FRAME - filled);
@@ -207,7 +274,7 @@ fn floor(payloads: &[Vec<u8>]) -> Box<dyn FnMut() -> Result<(), Failure> + '_> {
     })
 }
 
-fn decoding(payloads: &[Vec<u8>]) -> Box<dyn FnMut() -> Result<(), Failure> + '_> {
+fn decoding(payloads: &[Vec<u8>]) -> Work<'_> {
     let mut block = Block::empty();
     Box::new(move || {
         for payload in payloads {
@@ -232,13 +299,17 @@ fn analyse(blocks: &[Block], plan: &GroupPlan, scratch: &mut Scratch, closed: &m
     let mut analysis = PointAnalysis::new(spec.reading_every, spec.speed.lowest);
     for block in blocks {
         let at = block.at.unwrap_or_default();
-        let arriving =
-            Arriving { block, at: SignalTime::from_ns(at), arrival: Arrival::from_ns(at), speeds: &Steady };
+        let arriving = Arriving {
+            block,
+            at: SignalTime::from_ns(at),
+            arrival: Arrival::from_ns(at),
+            speeds: &Steady,
+        };
         analysis.push(spec.points[0].spec(), arriving, scratch, closed);
     }
 }
 
-fn analysing<'a>(blocks: &'a [Block], plan: &'a GroupPlan) -> Box<dyn FnMut() -> Result<(), Failure> + 'a> {
+fn analysing<'a>(blocks: &'a [Block], plan: &'a GroupPlan) -> Work<'a> {
     let (mut scratch, mut closed) = (Scratch::new(), Vec::new());
     Box::new(move || {
         closed.clear();
@@ -248,18 +319,23 @@ fn analysing<'a>(blocks: &'a [Block], plan: &'a GroupPlan) -> Box<dyn FnMut() ->
     })
 }
 
-fn judging<'a>(
-    blocks: &[Block],
-    plan: &'a GroupPlan,
-) -> Result<Box<dyn FnMut() -> Result<(), Failure> + 'a>, Failure> {
-    let identity = Identity { gateway: id("gw")?, site: id("bench")?, epoch: 0 };
+fn judging<'a>(blocks: &[Block], plan: &'a GroupPlan) -> Result<Work<'a>, Failure> {
+    let identity = Identity {
+        gateway: id("gw")?,
+        site: id("bench")?,
+        epoch: 0,
+    };
     let (mut scratch, mut readings, mut actions) = (Scratch::new(), Vec::new(), Vec::new());
     analyse(blocks, plan, &mut scratch, &mut readings);
     let asset = &plan.assets()[0];
     let mut judge = AssetJudge::new(asset, Arrival::from_ns(0));
     Ok(Box::new(move || {
         for reading in &readings {
-            let context = Context { identity: &identity, plan: asset, arrival: reading.closed };
+            let context = Context {
+                identity: &identity,
+                plan: asset,
+                arrival: reading.closed,
+            };
             judge.reading(context, 0, reading.clone(), &|| None, &mut actions);
         }
         black_box(&actions);
@@ -268,16 +344,31 @@ fn judging<'a>(
     }))
 }
 
-fn stepping<'a>(payloads: &'a [Vec<u8>], plan: &'a Arc<GroupPlan>) -> Box<dyn FnMut() -> Result<(), Failure> + 'a> {
+fn stepping<'a>(payloads: &'a [Vec<u8>], plan: &'a Arc<GroupPlan>) -> Work<'a> {
     let (mut scratch, mut actions): (Scratch, Vec<Action>) = (Scratch::new(), Vec::new());
     Box::new(move || {
         let mut group = Group::new();
         let start = Arrival::from_ns(1_764_547_200_000_000_000);
-        let identity = Identity { gateway: id("gw")?, site: id("bench")?, epoch: 0 };
+        let identity = Identity {
+            gateway: id("gw")?,
+            site: id("bench")?,
+            epoch: 0,
+        };
         let asset = id("P-1")?;
-        let source = Source { asset: asset.clone(), source: id("drive-end")? };
-        let speed = Speed { at: Some(start.ns()), rpm: 1482.0, shaft: None };
-        for input in [Input::Started(identity), Input::Plan(Arc::clone(plan)), Input::Speed(asset, speed)] {
+        let source = Source {
+            asset: asset.clone(),
+            source: id("drive-end")?,
+        };
+        let speed = Speed {
+            at: Some(start.ns()),
+            rpm: 1482.0,
+            shaft: None,
+        };
+        for input in [
+            Input::Started(identity),
+            Input::Plan(Arc::clone(plan)),
+            Input::Speed(asset, speed),
+        ] {
             group.step(start, &input, &mut scratch, &mut actions);
         }
         let mut input = Input::Block(source, Block::empty());

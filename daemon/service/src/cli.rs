@@ -57,8 +57,8 @@ enum Command {
     },
 }
 
-/// The process's variables as text; one that is not Unicode is no configuration and is left out,
-/// unless it is ours: then its name is kept with a value no key takes.
+/// The process's variables as text; a name that is not Unicode is no key of ours and is left out, a value that is
+/// not keeps replacement characters, which no key takes.
 pub fn variables(all: impl Iterator<Item = (OsString, OsString)>) -> Vec<(String, String)> {
     all.filter_map(|(name, value)| {
         Some((
