@@ -6,7 +6,7 @@ use core::fmt::Write;
 
 use super::Block;
 use super::packing::{ByteOrder, Packing, SampleType};
-use crate::cbor::Writer;
+use crate::cbor::{self, Writer, Written};
 
 /// How samples are written in CBOR.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
@@ -45,79 +45,65 @@ fn tag(sample: SampleType) -> u64 {
 /// Writes a block as a CBOR map. A block without `at` is written without it, and will not be read as CBOR.
 #[must_use]
 pub fn encode_cbor(block: &Block, encoding: SampleEncoding) -> Vec<u8> {
-    let samples = &block.samples;
-    let mut w = Writer::with_capacity(160 + samples.len() * 9);
-    let optional = [
-        block.at.is_some(),
-        block.seq.is_some(),
-        block.rpm.is_some(),
-        block.bias.is_some(),
-    ];
-    w.map(5 + optional.iter().filter(|there| **there).count());
-    if let Some(at) = block.at {
-        w.text("at");
-        w.integer(at);
-    }
-    if let Some(seq) = block.seq {
-        w.text("seq");
-        w.unsigned(seq);
-    }
-    w.text("rate");
-    w.float(block.rate_hz);
-    w.text("unit");
-    w.text(block.unit.text());
-    w.text("scale");
-    w.float(block.scale);
-    w.text("channels");
-    w.unsigned(u64::from(block.channels));
-    for (key, value) in [("rpm", block.rpm), ("bias", block.bias)] {
-        if let Some(value) = value {
-            w.text(key);
-            w.float(value);
+    cbor::write(160 + block.samples.len() * 9, |w| {
+        let optional = [
+            block.at.is_some(),
+            block.seq.is_some(),
+            block.rpm.is_some(),
+            block.bias.is_some(),
+        ];
+        w.map(5 + optional.iter().filter(|there| **there).count() as u64)?;
+        if let Some(at) = block.at {
+            w.str("at")?.i64(at)?;
         }
-    }
-    w.text("samples");
+        if let Some(seq) = block.seq {
+            w.str("seq")?.u64(seq)?;
+        }
+        w.str("rate")?.f64(block.rate_hz)?;
+        w.str("unit")?.str(block.unit.text())?;
+        w.str("scale")?.f64(block.scale)?;
+        w.str("channels")?.u16(block.channels)?;
+        for (key, value) in [("rpm", block.rpm), ("bias", block.bias)] {
+            if let Some(value) = value {
+                w.str(key)?.f64(value)?;
+            }
+        }
+        w.str("samples")?;
+        write_samples(w, &block.samples, encoding)
+    })
+}
+
+fn write_samples(w: &mut Writer, samples: &[f32], encoding: SampleEncoding) -> Written {
+    let count = samples.len();
     let whole = samples
         .iter()
         .map(|sample| f64::from(*sample) + if *sample < 0.0 { -0.5 } else { 0.5 });
     match encoding {
         // `as` cuts towards zero and holds the value within the integer's range.
         SampleEncoding::S16 => {
-            w.typed(
-                tag(SampleType::S16),
-                samples.len() * 2,
-                whole.map(|s| (s as i16).to_le_bytes()),
-            );
+            let codes = whole.map(|s| (s as i16).to_le_bytes());
+            cbor::typed(w, tag(SampleType::S16), count * 2, codes)
         }
         SampleEncoding::S32 => {
-            w.typed(
-                tag(SampleType::S32),
-                samples.len() * 4,
-                whole.map(|s| (s as i32).to_le_bytes()),
-            );
+            let codes = whole.map(|s| (s as i32).to_le_bytes());
+            cbor::typed(w, tag(SampleType::S32), count * 4, codes)
         }
         SampleEncoding::F32 => {
-            w.typed(
-                tag(SampleType::F32),
-                samples.len() * 4,
-                samples.iter().map(|s| s.to_le_bytes()),
-            );
+            let floats = samples.iter().map(|s| s.to_le_bytes());
+            cbor::typed(w, tag(SampleType::F32), count * 4, floats)
         }
         SampleEncoding::F64 => {
-            w.typed(
-                tag(SampleType::F64),
-                samples.len() * 8,
-                samples.iter().map(|s| f64::from(*s).to_le_bytes()),
-            );
+            let floats = samples.iter().map(|s| f64::from(*s).to_le_bytes());
+            cbor::typed(w, tag(SampleType::F64), count * 8, floats)
         }
         SampleEncoding::Plain => {
-            w.array(samples.len());
+            w.array(count as u64)?;
             for sample in samples {
-                w.single(*sample);
+                w.f32(*sample)?;
             }
+            Ok(())
         }
     }
-    w.into_bytes()
 }
 
 /// Writes a block as a JSON object with plain numbers; samples read back to the same 32-bit floats.

@@ -10,7 +10,7 @@ use base64::{DecodeError, Engine, alphabet};
 
 use super::packing::{ByteOrder, Packing, SampleType, unpack};
 use super::{Limits, MAX_SCALED};
-use crate::cbor::{Cursor, number};
+use crate::cbor::{Cursor, Item};
 use crate::field::{Field, Value};
 use crate::refusal::{Reason, Refusal};
 
@@ -62,7 +62,7 @@ impl Origin<'_> {
             Origin::Cbor { items, start } => {
                 let mut cursor = Cursor::new(items, *start);
                 for _ in 0..index {
-                    if cursor.head().is_err() {
+                    if cursor.item().is_err() {
                         break;
                     }
                 }
@@ -221,12 +221,10 @@ fn from_cbor(
     // Every item takes at least one byte, so the count is no larger than the payload.
     out.reserve(count as usize);
     for _ in 0..count {
-        let head = cursor.head()?;
-        let value = match (head.major, head.info) {
-            (0, _) => head.argument as f64,
-            (1, _) => -1.0 - head.argument as f64,
-            (7, 25..=27) => number(head),
-            (_, _) => return Err(Refusal::of(Reason::WrongType, head.at, field.key)),
+        let (at, value) = match cursor.item()? {
+            (at, Item::Int(number)) => (at, number as f64),
+            (at, Item::Float(number)) => (at, number),
+            (at, _) => return Err(Refusal::of(Reason::WrongType, at, field.key)),
         };
         let sample = value as f32;
         if !sample.is_finite() {
@@ -235,7 +233,7 @@ fn from_cbor(
             } else {
                 Reason::SampleNotFinite
             };
-            return Err(Refusal::of(reason, head.at, field.key));
+            return Err(Refusal::of(reason, at, field.key));
         }
         out.push(sample);
     }

@@ -4,7 +4,7 @@ use alloc::borrow::Cow;
 use alloc::string::{String, ToString};
 
 use super::{FORMAT, Header, Record, RecordingFault, VERSION};
-use crate::cbor::Cursor;
+use crate::cbor::{Cursor, Item};
 use crate::field::{self, Field, Slot, Value};
 use crate::refusal::{Reason, Refusal};
 
@@ -47,11 +47,9 @@ fn read_header(cursor: &mut Cursor<'_>) -> Result<Header, RecordingFault> {
     let not_ours = |refusal: Refusal| RecordingFault::NotOurs {
         offset: refusal.offset,
     };
-    let head = cursor.head().map_err(not_ours)?;
-    if head.major != 5 {
-        return Err(RecordingFault::NotOurs { offset: 0 });
-    }
-    let slots = field::read_entries(cursor, head.argument, &HEADER).map_err(not_ours)?;
+    let entries = cursor.map().map_err(not_ours)?;
+    let entries = entries.ok_or(RecordingFault::NotOurs { offset: 0 })?;
+    let slots = field::read_entries(cursor, entries, &HEADER).map_err(not_ours)?;
     let [format, version, site, root, config_hash, epoch, truth] = &slots;
     let written = field::text(format).map_err(not_ours)?;
     if written.is_none_or(|(text, _)| text != FORMAT) {
@@ -134,11 +132,10 @@ const KEYS: [&str; 11] = [
 
 /// One record; `None` as fault when the item is well formed but not ours.
 fn item<'a>(cursor: &mut Cursor<'a>) -> Result<Record<'a>, Option<Refusal>> {
-    let head = cursor.head()?;
-    match head.major {
-        4 if head.argument == 3 => message(cursor),
-        5 => {
-            let slots = field::read_entries(cursor, head.argument, &KEYS)?;
+    match cursor.item()? {
+        (_, Item::Array(3)) => message(cursor),
+        (_, Item::Map(entries)) => {
+            let slots = field::read_entries(cursor, entries, &KEYS)?;
             let [
                 started,
                 plan,
@@ -191,8 +188,8 @@ fn item<'a>(cursor: &mut Cursor<'a>) -> Result<Record<'a>, Option<Refusal>> {
             };
             record.ok_or(None)
         }
-        _ => {
-            cursor.pass(head, field::MAX_DEPTH)?;
+        (at, other) => {
+            cursor.pass(at, other, field::MAX_DEPTH)?;
             Err(None)
         }
     }
@@ -201,19 +198,16 @@ fn item<'a>(cursor: &mut Cursor<'a>) -> Result<Record<'a>, Option<Refusal>> {
 fn message<'a>(cursor: &mut Cursor<'a>) -> Result<Record<'a>, Option<Refusal>> {
     let (_, arrival) = cursor.value()?;
     let (_, topic) = cursor.value()?;
-    let payload = cursor.head()?;
-    if payload.major != 2 {
-        cursor.pass(payload, field::MAX_DEPTH)?;
-        return Err(None);
-    }
-    let payload = cursor.take(payload.argument)?;
-    match (arrival, topic) {
+    let (at, payload) = cursor.item()?;
+    cursor.pass(at, payload, field::MAX_DEPTH)?;
+    match (arrival, topic, payload) {
         (
             Value::Int(arrival),
             Value::Text {
                 text: Cow::Borrowed(topic),
                 ..
             },
+            Item::Bytes(payload),
         ) => {
             let arrival = i64::try_from(arrival).map_err(|_| None)?;
             Ok(Record::Message {
@@ -222,7 +216,7 @@ fn message<'a>(cursor: &mut Cursor<'a>) -> Result<Record<'a>, Option<Refusal>> {
                 payload,
             })
         }
-        (_, _) => Err(None),
+        (_, _, _) => Err(None),
     }
 }
 

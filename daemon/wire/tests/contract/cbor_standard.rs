@@ -106,6 +106,61 @@ fn plain_arrays_read_integers_and_floats_of_every_width() {
 }
 
 #[test]
+fn half_floats_read_as_the_examples_of_rfc_8949_appendix_a() {
+    // Appendix A: 0.0, -0.0, 1.0, 1.5, 65504.0, 5.960464477539063e-8, 0.00006103515625, -4.0.
+    let halves = b"\x88\xf9\x00\x00\xf9\x80\x00\xf9\x3c\x00\xf9\x3e\x00\xf9\x7b\xff\xf9\x00\x01\xf9\x04\x00\xf9\xc4\x00";
+    let expected = [
+        0.0,
+        -0.0,
+        1.0,
+        1.5,
+        65_504.0,
+        5.960_464_5e-8,
+        0.000_061_035_156,
+        -4.0_f32,
+    ];
+    assert_eq!(
+        samples(halves)
+            .iter()
+            .map(|s| s.to_bits())
+            .collect::<Vec<_>>(),
+        expected.map(f32::to_bits)
+    );
+    // Appendix A: Infinity, NaN, -Infinity.
+    for endless in [
+        b"\x81\xf9\x7c\x00",
+        b"\x81\xf9\x7e\x00",
+        b"\x81\xf9\xfc\x00",
+    ] {
+        let refused = block::decode(&block_with(endless), &Encoding::Cbor, &Limits::default());
+        assert_eq!(
+            refused.unwrap_err().reason,
+            Reason::SampleNotFinite,
+            "{endless:02x?}"
+        );
+    }
+}
+
+#[test]
+fn a_simple_value_below_32_in_two_bytes_is_not_well_formed() {
+    // RFC 8949 section 3.3: simple values below 32 are never written as f8 and a byte.
+    for (value, reason) in [
+        (24, Some(Reason::BadSyntax)),
+        (31, Some(Reason::BadSyntax)),
+        (32, None),
+    ] {
+        let mut payload = block_with(b"\x81\x01");
+        payload[0] += 1;
+        payload.extend([0x61, b'x', 0xf8, value]);
+        let read = block::decode(&payload, &Encoding::Cbor, &Limits::default());
+        assert_eq!(
+            read.err().map(|refusal| (refusal.reason, refusal.offset)),
+            reason.map(|r| (r, payload.len() - 2))
+        );
+    }
+}
+
+#[test]
 fn a_length_beyond_the_limit_is_refused_before_any_memory_is_taken() {
     let mut block = block::Block::empty();
     let limits = Limits {

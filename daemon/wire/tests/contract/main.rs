@@ -14,3 +14,4 @@ mod round_trip;
 mod samples;
 mod schemas;
 mod sizes;
+mod written;

@@ -4,7 +4,7 @@ use alloc::string::{String, ToString};
 use alloc::vec::Vec;
 
 use super::{Evidence, Trace};
-use crate::cbor::{Cursor, Writer};
+use crate::cbor::{self, Cursor, Writer, Written};
 use crate::field::{self, Field, Slot, Value};
 use crate::id::Id;
 use crate::out::{Header, Instant};
@@ -19,26 +19,25 @@ impl Evidence {
     pub fn encode(&self) -> Vec<u8> {
         let values = |trace: &Option<Trace>| trace.as_ref().map_or(0, |t| t.values.len());
         let samples = values(&self.spectrum) + values(&self.envelope) + values(&self.waveform);
-        let mut w = Writer::with_capacity(1024 + 4 * samples);
         let header = &self.header;
-        w.map(KEYS.len());
-        text(&mut w, "schema", Some(&header.schema));
-        text(&mut w, "gateway", Some(header.gateway.as_str()));
-        w.text("epoch");
-        w.unsigned(header.epoch);
-        text(&mut w, "site", Some(header.site.as_str()));
-        text(&mut w, "asset", header.asset.as_ref().map(Id::as_str));
-        text(&mut w, "at", Some(&header.at.to_string()));
-        text(&mut w, "event", Some(self.event.as_str()));
-        text(&mut w, "point", Some(self.point.as_str()));
-        text(&mut w, "watch", self.watch.as_deref());
-        float(&mut w, "rpm", self.rpm);
-        trace(&mut w, "spectrum", self.spectrum.as_ref());
-        trace(&mut w, "envelope", self.envelope.as_ref());
-        trace(&mut w, "waveform", self.waveform.as_ref());
-        w.text("truncated");
-        w.boolean(self.truncated);
-        w.into_bytes()
+        cbor::write(1024 + 4 * samples, |w| {
+            w.map(KEYS.len() as u64)?;
+            w.str("schema")?.str(&header.schema)?;
+            w.str("gateway")?.str(header.gateway.as_str())?;
+            w.str("epoch")?.u64(header.epoch)?;
+            w.str("site")?.str(header.site.as_str())?;
+            w.str("asset")?
+                .encode(header.asset.as_ref().map(Id::as_str))?;
+            w.str("at")?.str(&header.at.to_string())?;
+            w.str("event")?.str(self.event.as_str())?;
+            w.str("point")?.str(self.point.as_str())?;
+            w.str("watch")?.encode(self.watch.as_deref())?;
+            w.str("rpm")?.encode(self.rpm)?;
+            trace(w.str("spectrum")?, self.spectrum.as_ref())?;
+            trace(w.str("envelope")?, self.envelope.as_ref())?;
+            trace(w.str("waveform")?, self.waveform.as_ref())?;
+            w.str("truncated")?.bool(self.truncated)?.ok()
+        })
     }
 
     /// Reads evidence back; keys that are not known are passed over, and the time comes back in whole milliseconds.
@@ -112,50 +111,21 @@ const TRACE_KEYS: [&str; 8] = [
     "values",
 ];
 
-fn text(w: &mut Writer, key: &str, value: Option<&str>) {
-    w.text(key);
-    match value {
-        Some(value) => w.text(value),
-        None => w.null(),
-    }
-}
-
-fn float(w: &mut Writer, key: &str, value: Option<f64>) {
-    w.text(key);
-    match value {
-        Some(value) => w.float(value),
-        None => w.null(),
-    }
-}
-
-fn trace(w: &mut Writer, key: &str, value: Option<&Trace>) {
-    w.text(key);
+fn trace(w: &mut Writer, value: Option<&Trace>) -> Written {
     let Some(trace) = value else {
-        return w.null();
+        return w.null()?.ok();
     };
-    w.map(TRACE_KEYS.len());
-    float(w, "start", Some(trace.start));
-    float(w, "step", Some(trace.step));
-    text(w, "step_unit", Some(&trace.step_unit));
-    text(w, "unit", Some(&trace.unit));
-    w.text("band_hz");
-    match trace.band_hz {
-        Some([low, high]) => {
-            w.array(2);
-            w.float(low);
-            w.float(high);
-        }
-        None => w.null(),
-    }
-    float(w, "resolution_hz", trace.resolution_hz);
-    w.text("thinned");
-    w.unsigned(u64::from(trace.thinned));
-    w.text("values");
-    w.typed(
-        F32LE,
-        4 * trace.values.len(),
-        trace.values.iter().map(|value| value.to_le_bytes()),
-    );
+    w.map(TRACE_KEYS.len() as u64)?;
+    w.str("start")?.f64(trace.start)?;
+    w.str("step")?.f64(trace.step)?;
+    w.str("step_unit")?.str(&trace.step_unit)?;
+    w.str("unit")?.str(&trace.unit)?;
+    w.str("band_hz")?.encode(trace.band_hz)?;
+    w.str("resolution_hz")?.encode(trace.resolution_hz)?;
+    w.str("thinned")?.u32(trace.thinned)?;
+    w.str("values")?;
+    let values = trace.values.iter().map(|value| value.to_le_bytes());
+    cbor::typed(w, F32LE, 4 * trace.values.len(), values)
 }
 
 fn string(slot: Slot<'_, '_>) -> Result<Option<String>, Refusal> {
