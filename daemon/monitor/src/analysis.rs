@@ -6,12 +6,15 @@
 //! a frame belongs to the reading in which its last sample lies, and brings with it the velocity of its first
 //! half, so velocity lags by half a frame.
 
+mod arriving;
 mod continuity;
 mod evidence;
 mod format;
+mod machinery;
 mod plans;
 mod point;
 mod sums;
 
+pub use arriving::{Arriving, Progress, Speeds, Taken};
 pub use evidence::Traces;
-pub use point::{Arriving, PointAnalysis, Speeds, Taken};
+pub use point::PointAnalysis;

@@ -1,6 +1,10 @@
 //! One group of assets: the unit of thread, order and replay. It only dispatches.
 
-use alloc::{sync::Arc, vec::Vec};
+use alloc::{
+    collections::{BTreeMap, BTreeSet},
+    sync::Arc,
+    vec::Vec,
+};
 
 use humward_signal::frame::Scratch;
 use humward_wire::{
@@ -8,17 +12,21 @@ use humward_wire::{
     command::{Command, Verb},
     id::Id,
     out::{Header, Instant, Outcome, Reply},
+    refusal::Refusal,
 };
 
 use crate::{
     action::Action,
-    analysis::{Arriving, PointAnalysis, Speeds},
+    analysis::{Arriving, PointAnalysis, Progress, Speeds},
     input::{DeadlineReason, GapCause, Identity, Input, Source},
     judge::{AssetJudge, Context, SpeedTrack, Tally},
     plan::{AssetPlan, GroupPlan},
     reading::ShaftSpeed,
-    time::{Arrival, SignalTime},
+    time::{Arrival, SignalTime, Span},
 };
+
+/// Statuses due longer before an input than this are left out: a step's work stays bounded after a long silence.
+const LONGEST_CATCH_UP: Span = Span::from_secs(86_400);
 
 /// One asset's state: what may be thrown away and what must last.
 struct Asset {
@@ -44,6 +52,10 @@ pub struct Group {
     identity: Option<Identity>,
     plan: Option<Arc<GroupPlan>>,
     assets: Vec<Asset>,
+    /// How far stamps run ahead of the wall clock, after it was set back.
+    ahead: Span,
+    /// Event numbers of assets that left the plan, should they come back.
+    numbers: BTreeMap<Id, u64>,
 }
 
 impl core::fmt::Debug for Group {
@@ -65,7 +77,8 @@ impl Group {
     /// Takes in one stamped input; what is to be done is appended to `actions` in order.
     ///
     /// First every deadline up to `arrival` is seen to, each stamped with itself; then the input. The result
-    /// depends on the inputs and their stamps alone. `scratch` is working memory of the thread.
+    /// depends on the inputs and their stamps alone. Of the statuses due in a silence of more than a day only
+    /// the last day's are told. `scratch` is working memory of the thread.
     pub fn step(
         &mut self,
         arrival: Arrival,
@@ -73,8 +86,15 @@ impl Group {
         scratch: &mut Scratch,
         actions: &mut Vec<Action>,
     ) {
-        while let Some((due, _)) = self.next_deadline().filter(|(due, _)| *due <= arrival) {
-            self.deadline(due, actions);
+        let from = arrival.minus(LONGEST_CATCH_UP);
+        while let Some((due, reason)) = self.next_deadline().filter(|(due, _)| *due <= arrival) {
+            if due < from && reason == DeadlineReason::StatusDue {
+                self.each_asset(due, |asset, context| {
+                    asset.judge.skip_statuses(context.plan, from)
+                });
+            } else {
+                self.deadline(due, actions);
+            }
         }
         match input {
             Input::Started(identity) => self.identity = Some(identity.clone()),
@@ -94,15 +114,10 @@ impl Group {
                 self.command(arrival, asset, sender, command, actions)
             }
             Input::Gap(Some(source), cause, blocks) => self.gap(arrival, source, *cause, *blocks),
-            Input::Gap(None, cause, blocks) => self.gap_everywhere(*cause, *blocks),
-            Input::Refused(source, refusal) => {
-                self.with_source(source, arrival, |asset, point, _| {
-                    asset.judge.refused(point, *refusal);
-                    asset.judge.count(refusal.reason.code(), 1);
-                })
-            }
+            Input::Gap(None, cause, blocks) => self.gap_everywhere(arrival, *cause, *blocks),
+            Input::Refused(source, refusal) => self.refused(arrival, source, *refusal),
             Input::Link(up) => self.link(arrival, *up),
-            Input::ClockStep(_) => self.break_runs(),
+            Input::ClockStep(by) => self.clock_step(*by),
             Input::Deadline(DeadlineReason::RecordingEnd) => self.close_all(arrival, actions),
             Input::Deadline(
                 DeadlineReason::ReadingOverdue
@@ -113,7 +128,7 @@ impl Group {
         self.tell(arrival, actions);
     }
 
-    /// The next instant at which something is due although nothing arrives, and why.
+    /// The next instant at which something is due although nothing arrives, and why. At the end of time nothing is.
     pub fn next_deadline(&self) -> Option<(Arrival, DeadlineReason)> {
         self.identity.as_ref()?;
         let plan = self.plan.as_ref()?;
@@ -130,7 +145,8 @@ impl Group {
                 _ => (due, reason),
             }
         };
-        self.assets.iter().zip(plan.assets()).map(of_asset).min()
+        let next = self.assets.iter().zip(plan.assets()).map(of_asset).min();
+        next.filter(|(due, _)| due.ns() < i64::MAX)
     }
 
     /// What became of the readings so far: of each asset of the plan in order, of each of its points in order.
@@ -161,32 +177,66 @@ impl Group {
         scratch: &mut Scratch,
         actions: &mut Vec<Action>,
     ) {
-        let at = block
-            .at
-            .map_or(arrival.as_signal_time(), SignalTime::from_ns);
+        // A block without a time of its own ended when it arrived.
+        let length = Span::from_secs_f64(block.frames() as f64 / block.rate_hz);
+        let stamped = || arrival.as_signal_time().minus(length);
+        let at = block.at.map_or_else(stamped, SignalTime::from_ns);
         self.with_asset(&source.asset, arrival, |asset, context| {
             if let Some(rpm) = block.rpm {
                 asset.judge.speed(context, at, rpm, actions);
             }
+            let mut losses = BTreeSet::new();
             for (point, plan) in context.plan.spec().points.iter().enumerate() {
                 if plan.spec().source == source.source {
-                    asset.push(context, point, block, at, scratch, actions);
+                    losses.extend(asset.push(context, point, block, at, scratch, actions));
                 }
+            }
+            // Several points of one block lose it once.
+            for loss in losses {
+                asset.judge.count(loss, 1);
             }
         });
     }
 
+    fn refused(&mut self, arrival: Arrival, source: &Source, refusal: Refusal) {
+        self.with_source(source, arrival, |asset, point, _| {
+            asset.judge.refused(point, refusal, arrival);
+        });
+        self.with_asset(&source.asset, arrival, |asset, _| {
+            asset.judge.count(refusal.reason.code(), 1);
+        });
+    }
+
     fn gap(&mut self, arrival: Arrival, source: &Source, cause: GapCause, blocks: u64) {
-        self.with_source(source, arrival, |asset, point, _| asset.points[point].gap());
+        self.with_source(source, arrival, |asset, point, _| {
+            asset.points[point].gap();
+            asset.judge.our_gap(point);
+        });
         self.with_asset(&source.asset, arrival, |asset, _| {
             asset.judge.gap(cause, blocks)
         });
     }
 
-    fn gap_everywhere(&mut self, cause: GapCause, blocks: u64) {
-        self.break_runs();
-        for asset in &mut self.assets {
+    fn gap_everywhere(&mut self, arrival: Arrival, cause: GapCause, blocks: u64) {
+        self.each_asset(arrival, |asset, _| {
+            for (point, analysis) in asset.points.iter_mut().enumerate() {
+                analysis.gap();
+                asset.judge.our_gap(point);
+            }
             asset.judge.gap(cause, blocks);
+        });
+    }
+
+    /// Stamps jump forward by what a step gains over steps back that came before; after a step back they run on.
+    fn clock_step(&mut self, by: i64) {
+        let jump = Span::from_ns(by.saturating_sub(self.ahead.ns()));
+        self.ahead = Span::from_ns(self.ahead.ns().saturating_sub(by));
+        let back = Span::from_ns(by.saturating_neg());
+        for asset in &mut self.assets {
+            for point in &mut asset.points {
+                point.wall_clock_set(jump);
+            }
+            asset.judge.wall_clock_set(jump, back);
         }
     }
 
@@ -244,7 +294,11 @@ impl Group {
                     asset.judge.replan(&old, context, actions);
                     asset.judge
                 }
-                None => AssetJudge::new(new, arrival),
+                None => {
+                    let mut judge = AssetJudge::new(new, arrival);
+                    judge.count_on_from(self.numbers.remove(new.id()).unwrap_or_default());
+                    judge
+                }
             };
             let spec = new.spec();
             let points = spec
@@ -263,6 +317,7 @@ impl Group {
                 },
                 actions,
             );
+            self.numbers.insert(old.id().clone(), asset.judge.last_n());
         }
         self.plan = Some(Arc::clone(plan));
     }
@@ -379,25 +434,29 @@ impl Asset {
         at: SignalTime,
         scratch: &mut Scratch,
         actions: &mut Vec<Action>,
-    ) {
+    ) -> Option<&'static str> {
         let plan = context.plan.spec().points[point].spec();
-        let mut closed = Vec::new();
-        let speeds = AssetSpeeds {
-            plan: context.plan,
-            track: self.judge.speeds(),
-        };
-        let arriving = Arriving {
-            block,
-            at,
-            arrival: context.arrival,
-            speeds: &speeds,
-        };
-        let taken = self.points[point].push(plan, arriving, scratch, &mut closed);
-        self.judge.block(point, taken, context.arrival);
-        for reading in closed {
-            let analysis = &self.points[point];
-            self.judge
-                .reading(context, point, reading, &|| analysis.traces(), actions);
+        let mut from = None;
+        loop {
+            let speeds = AssetSpeeds {
+                plan: context.plan,
+                track: self.judge.speeds(),
+            };
+            let arriving = Arriving {
+                block,
+                at,
+                arrival: context.arrival,
+                speeds: &speeds,
+            };
+            let analysis = &mut self.points[point];
+            match analysis.advance(plan, arriving, &mut from, scratch) {
+                Progress::Closed(reading) => {
+                    let traces = || analysis.traces();
+                    self.judge
+                        .reading(context, point, *reading, &traces, actions);
+                }
+                Progress::Done(taken) => return self.judge.block(point, taken, context.arrival),
+            }
         }
     }
 

@@ -32,7 +32,7 @@ use crate::{
     input::{GapCause, Identity},
     plan::AssetPlan,
     reading::Reading,
-    time::{Arrival, SignalTime},
+    time::{Arrival, SignalTime, Span},
 };
 use running::RunningState;
 use sensor::{Cause, SensorChange, SensorState};
@@ -58,8 +58,8 @@ enum Judging {
     On,
     /// The machine does not run; they are held.
     Suspended,
-    /// It runs again; so many judged readings are still to come.
-    Resuming(u8),
+    /// It runs again; so many judged readings are still to come after the time already counted.
+    Resuming { left: u8, until: Option<SignalTime> },
 }
 
 /// The lasting state of one asset.
@@ -121,45 +121,72 @@ impl AssetJudge {
         rpm: f64,
         actions: &mut Vec<Action>,
     ) {
-        self.speeds.report(at, rpm);
         // A late report of an earlier speed says nothing about now.
-        if self
-            .speeds
-            .fresh(at, context.plan.spec().running.speed_valid)
-            == Some(rpm)
+        if self.speeds.report(at, rpm)
             && self.running.by_speed(&context.plan.spec().running, at, rpm)
         {
             self.running_changed(context, actions);
         }
     }
 
-    /// What became of a block of the point.
-    pub fn block(&mut self, point: usize, taken: Taken, now: Arrival) {
+    /// What became of a block of the point; the loss it counts under, if any.
+    pub fn block(&mut self, point: usize, taken: Taken, now: Arrival) -> Option<&'static str> {
         let cause = match taken {
-            Taken::Whole => return self.sensors[point].block(now),
+            Taken::Whole => {
+                self.sensors[point].block(now);
+                return None;
+            }
+            Taken::Empty => Cause::Empty,
             Taken::Late => Cause::Late,
             Taken::Uncalibrated => Cause::Uncalibrated,
             Taken::NoChannel => Cause::NoChannel,
             Taken::RateUnusable => Cause::RateUnusable,
         };
-        self.sensors[point].useless(cause);
-        self.count(message::loss_of(taken), 1);
+        self.sensors[point].useless(now, cause);
+        message::loss_of(taken)
     }
 
     /// A payload for the point was refused whole.
-    pub fn refused(&mut self, point: usize, refusal: Refusal) {
-        self.sensors[point].useless(Cause::Refused(refusal));
+    pub fn refused(&mut self, point: usize, refusal: Refusal, now: Arrival) {
+        self.sensors[point].useless(now, Cause::Refused(refusal));
     }
 
-    /// Counts something lost, by reason.
+    /// Counts something lost, by reason. The first of its kind is told at once, the number with the next status.
     pub fn count(&mut self, reason: &str, by: u64) {
-        *self.losses.entry(reason.into()).or_default() += by;
-        self.changed |= by > 0 && reason != "late";
+        let lost = self.losses.entry(reason.into()).or_default();
+        self.changed |= *lost == 0 && by > 0;
+        *lost = lost.saturating_add(by);
     }
 
     /// Blocks were lost on our side.
     pub fn gap(&mut self, cause: GapCause, blocks: u64) {
         self.count(message::gap_of(cause), blocks.max(1));
+    }
+
+    /// Samples of the point are missing by our own doing.
+    pub fn our_gap(&mut self, point: usize) {
+        self.sensors[point].our_gap();
+    }
+
+    /// Our own clock was set and stamps jumped by `jump`: nothing becomes older by that.
+    ///
+    /// Set back by `back`, clocks that follow ours tell earlier times from now on: what was reported before moves with them.
+    pub fn wall_clock_set(&mut self, jump: Span, back: Span) {
+        for sensor in &mut self.sensors {
+            sensor.wall_clock_set(jump);
+            sensor.our_gap();
+        }
+        self.speeds.set_back(back);
+        self.running.set_back(back);
+        for reading in self
+            .latest
+            .iter_mut()
+            .chain(&mut self.last_running)
+            .flatten()
+        {
+            reading.closed = reading.closed.plus(jump);
+        }
+        self.status_due = self.status_due.plus(jump);
     }
 
     /// The connection that brings the blocks came up or was lost.
@@ -169,6 +196,9 @@ impl AssetJudge {
                 sensor.excuse(now);
             }
             self.gap(GapCause::LinkLost, 1);
+        }
+        for sensor in &mut self.sensors {
+            sensor.our_gap();
         }
         self.changed |= self.link_up != up;
         self.link_up = up;
@@ -183,9 +213,11 @@ impl AssetJudge {
         traces: &dyn Fn() -> Option<Traces>,
         actions: &mut Vec<Action>,
     ) {
-        self.level(context, &reading, actions);
+        self.level(context, point, &reading, actions);
         let after = context.plan.spec().sensor_after;
-        if self.sensors[point].reading(&reading, after) == Some(SensorChange::Cleared) {
+        let stands_still = self.running.state() == Operating::Stopped;
+        if self.sensors[point].reading(&reading, after, stands_still) == Some(SensorChange::Cleared)
+        {
             self.sensor_changed(context, point, SensorChange::Cleared, actions);
         }
         let runs = self.running.ran_from(reading.start);
@@ -202,7 +234,7 @@ impl AssetJudge {
             self.last_running[point] = Some(reading.clone());
         }
         self.latest[point] = Some(reading.clone());
-        if judged && self.judging_goes_on(context, actions) {
+        if judged && self.judging_goes_on(context, &reading, actions) {
             for index in 0..self.watches.len() {
                 if context.plan.spec().watches[index].spec().point == point
                     && let Some(change) =
@@ -252,6 +284,28 @@ impl AssetJudge {
             self.status_due = context.arrival.plus(context.plan.spec().status_every);
             actions.push(Action::Status(status::status(self, context)));
         }
+    }
+
+    /// Leaves out the statuses that were due before `from`: nobody was there to be told.
+    pub fn skip_statuses(&mut self, plan: &AssetPlan, from: Arrival) {
+        let every = plan.spec().status_every.ns().max(1);
+        let behind = from.since(self.status_due).ns();
+        if behind > 0 {
+            let periods = behind / every + i64::from(behind % every != 0);
+            self.status_due = self
+                .status_due
+                .plus(plan.spec().status_every.times(periods));
+        }
+    }
+
+    /// The number of its last event.
+    pub const fn last_n(&self) -> u64 {
+        self.n
+    }
+
+    /// Events count on from `n`: the asset was here before.
+    pub const fn count_on_from(&mut self, n: u64) {
+        self.n = n;
     }
 
     /// Asks for a status with the next chance, whatever has changed.

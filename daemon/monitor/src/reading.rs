@@ -41,8 +41,10 @@ impl Doubt {
     /// Whether it is the sensor or link that is to blame, not the machine.
     pub const fn is_instrument(self) -> bool {
         match self {
-            Self::Short | Self::Clipped | Self::Flat | Self::RateUnusable => true,
-            Self::RateChanged | Self::SpeedMoving => false,
+            Self::Short | Self::Clipped | Self::Flat | Self::RateChanged | Self::RateUnusable => {
+                true
+            }
+            Self::SpeedMoving => false,
         }
     }
 

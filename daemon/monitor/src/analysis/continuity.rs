@@ -2,9 +2,10 @@
 //!
 //! With a counter (`seq`) the counter decides; without one the block's own time does, with half a block's
 //! length as tolerance, so that stamping jitter is not taken for a lost block. A sensor whose clock was set
-//! back would look late for ever: the third late block in a row that follows the one before it is believed.
+//! back would look late for ever: the third late block in a row that follows the one before it is believed,
+//! unless they come faster than their samples were taken: that is a backlog sent once more.
 
-use crate::time::{SignalTime, Span};
+use crate::time::{Arrival, SignalTime, Span};
 
 /// How a block joins what came before it.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -15,19 +16,28 @@ pub(super) enum Joint {
     Follows,
     /// Samples are missing before it, or the sensor began anew: about this long.
     AfterGap(Span),
+    /// Its sensor's clock was set back, or the sensor began anew at an earlier time.
+    ClockSetBack,
     /// It was seen already, or comes after a later one: not to be used.
     Late,
 }
 
 /// Blocks in a row that must look late before their clock is believed.
-const LATE_BELIEVED: u8 = 3;
+const LATE_BELIEVED: u32 = 3;
 
 /// What the next block of a source is expected to be.
 #[derive(Debug, Clone, PartialEq, Default)]
 pub(super) struct Continuity {
     next: Option<Next>,
-    late_next: Option<SignalTime>,
-    late_in_row: u8,
+    late: Option<Late>,
+}
+
+/// Late blocks in a row, each following the one before.
+#[derive(Debug, Clone, Copy, PartialEq)]
+struct Late {
+    next: SignalTime,
+    count: u32,
+    first: Arrival,
 }
 
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -42,8 +52,14 @@ impl Continuity {
         *self = Self::default();
     }
 
-    /// Joins a block that begins at `at`, lasts `length` and may carry a counter.
-    pub(super) fn join(&mut self, at: SignalTime, length: Span, seq: Option<u64>) -> Joint {
+    /// Joins a block that begins at `at`, lasts `length`, may carry a counter, and came at `arrival`.
+    pub(super) fn join(
+        &mut self,
+        at: SignalTime,
+        length: Span,
+        seq: Option<u64>,
+        arrival: Arrival,
+    ) -> Joint {
         let Some(next) = self.next else {
             self.expect(at, length, seq);
             return Joint::First;
@@ -54,10 +70,10 @@ impl Continuity {
             (Some(next), Some(seq)) => Some(next == seq),
             _ => None,
         };
-        let joint = if early && !self.clock_believed(at, length, tolerance) {
+        let joint = if early && !self.clock_believed(at, length, tolerance, arrival) {
             return Joint::Late;
         } else if early {
-            Joint::AfterGap(Span::ZERO)
+            Joint::ClockSetBack
         } else if counted_on == Some(true) && at.since(next.at) <= length.times(2) {
             Joint::Follows
         } else if counted_on == Some(false) || at.since(next.at) > tolerance {
@@ -69,13 +85,25 @@ impl Continuity {
         joint
     }
 
-    fn clock_believed(&mut self, at: SignalTime, length: Span, tolerance: Span) -> bool {
-        let follows = self
-            .late_next
-            .is_some_and(|next| next.since(at) <= tolerance && at.since(next) <= tolerance);
-        self.late_in_row = if follows { self.late_in_row + 1 } else { 1 };
-        self.late_next = Some(at.plus(length));
-        self.late_in_row >= LATE_BELIEVED
+    fn clock_believed(
+        &mut self,
+        at: SignalTime,
+        length: Span,
+        tolerance: Span,
+        arrival: Arrival,
+    ) -> bool {
+        let before = self
+            .late
+            .filter(|late| late.next.since(at) <= tolerance && at.since(late.next) <= tolerance);
+        let late = Late {
+            next: at.plus(length),
+            count: before.map_or(1, |late| late.count.saturating_add(1)),
+            first: before.map_or(arrival, |late| late.first),
+        };
+        self.late = Some(late);
+        // Half the pace of the samples leaves room for jitter.
+        let taken = length.times(i64::from(late.count) - 1);
+        late.count >= LATE_BELIEVED && arrival.since(late.first).times(2) >= taken
     }
 
     fn expect(&mut self, at: SignalTime, length: Span, seq: Option<u64>) {
@@ -83,26 +111,34 @@ impl Continuity {
             at: at.plus(length),
             seq: seq.map(|seq| seq.wrapping_add(1)),
         });
-        self.late_next = None;
-        self.late_in_row = 0;
+        self.late = None;
     }
 }
 
 #[cfg(test)]
 mod tests {
     use super::{Continuity, Joint};
-    use crate::time::{SignalTime, Span};
+    use crate::time::{Arrival, SignalTime, Span};
 
     extern crate std;
     use std::vec::Vec;
 
+    /// Joints of blocks of 100 ms: their time in ms and counter; each arrives when its last sample is taken.
     fn joints(blocks: &[(i64, Option<u64>)]) -> Vec<Joint> {
+        joints_paced(blocks, 100)
+    }
+
+    fn joints_paced(blocks: &[(i64, Option<u64>)], pace_ms: i64) -> Vec<Joint> {
         let mut continuity = Continuity::default();
-        let ms = |ms: i64| SignalTime::from_ns(ms * 1_000_000);
+        let ns = |ms: i64| ms * 1_000_000;
         let length = Span::from_ns(100_000_000);
+        let arrivals = (0..).map(|k| Arrival::from_ns(ns(20_000 + pace_ms * k)));
         blocks
             .iter()
-            .map(|(at, seq)| continuity.join(ms(*at), length, *seq))
+            .zip(arrivals)
+            .map(|((at, seq), arrival)| {
+                continuity.join(SignalTime::from_ns(ns(*at)), length, *seq, arrival)
+            })
             .collect()
     }
 
@@ -145,8 +181,21 @@ mod tests {
         ]);
         assert_eq!(
             seen[1..],
-            [Joint::Late, Joint::Late, gap(0), Joint::Follows]
+            [
+                Joint::Late,
+                Joint::Late,
+                Joint::ClockSetBack,
+                Joint::Follows
+            ]
         );
+    }
+
+    #[test]
+    fn a_backlog_sent_once_more_is_late_to_its_last_block() {
+        let mut blocks: Vec<_> = (0..300).map(|k| (k * 100, None)).collect();
+        blocks.extend_from_within(..);
+        let seen = joints_paced(&blocks, 1);
+        assert!(seen[300..].iter().all(|joint| *joint == Joint::Late));
     }
 
     #[test]

@@ -1,43 +1,30 @@
 //! The analysis of one point: blocks in, readings out.
 
-use alloc::vec::Vec;
+use alloc::{boxed::Box, vec::Vec};
 
-use humward_signal::{
-    frame::{FrameFault, Scratch},
-    lowband::LowBandState,
-};
-use humward_wire::block::Block;
+use humward_signal::frame::{FrameFault, Scratch};
 
 use super::{
+    arriving::{Arriving, Progress, Speeds, Taken},
     continuity::{Continuity, Joint},
     evidence::{self, Traces, Waveform},
     format::Format,
+    machinery::{Channel, Machinery, Run},
     plans::Plans,
     sums::Sums,
 };
 use crate::{
     plan::PointSpec,
-    reading::{Doubt, Doubts, Reading, ShaftSpeed},
+    reading::{Doubt, Doubts, Reading},
     time::{Arrival, SignalTime, Span},
 };
 
+/// No block is from after this, 2200-01-01 UTC, ns: what a clock reads beyond it is no time.
+const LAST_NS: i64 = 7_258_118_400_000_000_000;
+/// No accelerometer samples faster: beyond it a rate is a mistake.
+const HIGHEST_RATE_HZ: f64 = 1e6;
 /// Least time the last blocks of a reading are waited for.
 const GRACE: Span = Span::from_secs(2);
-
-/// What became of a block.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub enum Taken {
-    /// Its samples were taken in.
-    Whole,
-    /// It was seen already or came too late: not used.
-    Late,
-    /// Its unit needs a calibration the point does not have.
-    Uncalibrated,
-    /// It has no such channel.
-    NoChannel,
-    /// Its rate cannot serve the point.
-    RateUnusable,
-}
 
 /// One open reading.
 #[derive(Debug)]
@@ -47,53 +34,6 @@ struct Open {
     gaps: u32,
     doubts: Doubts,
     format: Format,
-}
-
-/// A run of frames without a gap.
-#[derive(Debug)]
-struct Run {
-    filled: usize,
-    low: LowBandState,
-    low_given: usize,
-}
-
-/// Everything that depends on the sample rate.
-#[derive(Debug)]
-struct Machinery {
-    plans: Plans,
-    sums: Sums,
-    last: Sums,
-    frame: Vec<f32>,
-    low_out: Vec<f32>,
-    waveform: Waveform,
-}
-
-/// The speed that stands for a stretch of time, and whether it moved in it.
-pub trait Speeds {
-    /// From `start` to `end`.
-    fn over(&self, start: SignalTime, end: SignalTime) -> (ShaftSpeed, bool);
-}
-
-/// One block as it reaches a point.
-#[derive(Clone, Copy)]
-pub struct Arriving<'a> {
-    /// The block.
-    pub block: &'a Block,
-    /// Signal time of its first sample.
-    pub at: SignalTime,
-    /// When it arrived.
-    pub arrival: Arrival,
-    /// The speeds of the asset.
-    pub speeds: &'a dyn Speeds,
-}
-
-impl core::fmt::Debug for Arriving<'_> {
-    fn fmt(&self, f: &mut core::fmt::Formatter<'_>) -> core::fmt::Result {
-        f.debug_struct("Arriving")
-            .field("at", &self.at)
-            .field("arrival", &self.arrival)
-            .finish_non_exhaustive()
-    }
 }
 
 /// The disposable state of one point.
@@ -128,6 +68,8 @@ impl PointAnalysis {
     }
 
     /// Takes in one block; readings it completes are appended to `closed`.
+    ///
+    /// As [`advance`](Self::advance), for whoever wants no traces.
     pub fn push(
         &mut self,
         point: &PointSpec,
@@ -135,6 +77,26 @@ impl PointAnalysis {
         scratch: &mut Scratch,
         closed: &mut Vec<Reading>,
     ) -> Taken {
+        let mut from = None;
+        loop {
+            match self.advance(point, arriving, &mut from, scratch) {
+                Progress::Closed(reading) => closed.push(*reading),
+                Progress::Done(taken) => return taken,
+            }
+        }
+    }
+
+    /// Takes in a block up to the end of the reading in progress, or to its own end.
+    ///
+    /// `from` is `None` for a new block and keeps the place in it; to be called again until it is
+    /// [`Progress::Done`]. Between the calls [`traces`](Self::traces) are those of the reading just closed.
+    pub fn advance(
+        &mut self,
+        point: &PointSpec,
+        arriving: Arriving<'_>,
+        from: &mut Option<usize>,
+        scratch: &mut Scratch,
+    ) -> Progress {
         let Arriving {
             block,
             at,
@@ -142,47 +104,36 @@ impl PointAnalysis {
             speeds,
         } = arriving;
         let Some(format) = Format::of(block, point) else {
-            return Taken::Uncalibrated;
+            return Progress::Done(Taken::Uncalibrated);
         };
         let channels = usize::from(block.channels.max(1));
         let channel = usize::from(point.channel);
         if channel >= channels {
-            return Taken::NoChannel;
-        }
-        let rate_hz = block.rate_hz;
-        if !self.plan_for(point, rate_hz) {
-            return Taken::RateUnusable;
+            return Progress::Done(Taken::NoChannel);
         }
         let count = block.samples.len() / channels;
-        let length = Span::from_secs_f64(count as f64 / rate_hz);
-        let mut skip = 0;
-        match self.continuity.join(at, length, block.seq) {
-            Joint::Late => return Taken::Late,
-            Joint::First | Joint::Follows => {}
-            Joint::AfterGap(gap) => {
-                if gap == Span::ZERO {
-                    self.last_end = None;
+        let mut done = match *from {
+            Some(done) => done,
+            None => match self.begin(point, arriving, count) {
+                Ok((done, reading)) => {
+                    *from = Some(done);
+                    if let Some(reading) = reading {
+                        return Progress::Closed(Box::new(reading));
+                    }
+                    done
                 }
-                self.break_run();
-            }
-        }
-        if let Some(last_end) = self.last_end
-            && at < last_end
-        {
-            skip = ((last_end.since(at).secs() * rate_hz).ceil() as usize).min(count);
-            self.break_run();
-            if skip == count {
-                return Taken::Late;
-            }
-        }
-        self.newest = Some((at.plus(length), arrival, length));
-        let mut done = skip;
+                Err(taken) => return Progress::Done(taken),
+            },
+        };
         while done < count {
-            let now = at.plus(Span::from_secs_f64(done as f64 / rate_hz));
-            closed.extend(self.close_if_past(now, point, arrival, speeds));
+            let now = at.plus(Span::from_secs_f64(done as f64 / block.rate_hz));
+            if let Some(reading) = self.close_if_past(now, point, arrival, speeds) {
+                return Progress::Closed(Box::new(reading));
+            }
             let end = self.open_at(now, point, format, block.samples[done * channels + channel]);
             // Times are whole nanoseconds: a sample that lies within a thousandth of the border is on it.
-            let until_end = ((end.since(now).secs() * rate_hz) - 1e-3).ceil().max(1.0) as usize;
+            let left = end.since(now).secs() * block.rate_hz;
+            let until_end = (left - 1e-3).ceil().max(1.0) as usize;
             let take = until_end.min(count - done);
             let samples = Channel {
                 samples: &block.samples[done * channels..(done + take) * channels],
@@ -192,14 +143,63 @@ impl PointAnalysis {
             if self.take(&samples, format, scratch).is_err() {
                 self.machinery = None;
                 self.break_run();
-                return Taken::RateUnusable;
+                return Progress::Done(Taken::RateUnusable);
             }
             done += take;
-            if take == until_end {
-                closed.extend(self.close(point, arrival, speeds));
+            *from = Some(done);
+            if take == until_end
+                && let Some(reading) = self.close(point, arrival, speeds)
+            {
+                return Progress::Closed(Box::new(reading));
             }
         }
-        Taken::Whole
+        Progress::Done(Taken::Whole)
+    }
+
+    /// Joins a new block of `count` samples to what came before; the first sample to use, and the reading that
+    /// ends with it.
+    fn begin(
+        &mut self,
+        point: &PointSpec,
+        arriving: Arriving<'_>,
+        count: usize,
+    ) -> Result<(usize, Option<Reading>), Taken> {
+        let Arriving {
+            block,
+            at,
+            arrival,
+            speeds,
+        } = arriving;
+        if count == 0 {
+            return Err(Taken::Empty);
+        }
+        if !(0..LAST_NS).contains(&at.ns()) {
+            return Err(Taken::Late);
+        }
+        if !(0.0..=HIGHEST_RATE_HZ).contains(&block.rate_hz) || !self.plan_for(point, block.rate_hz)
+        {
+            return Err(Taken::RateUnusable);
+        }
+        let length = Span::from_secs_f64(count as f64 / block.rate_hz);
+        let mut closed = None;
+        match self.continuity.join(at, length, block.seq, arrival) {
+            Joint::Late => return Err(Taken::Late),
+            Joint::First | Joint::Follows => {}
+            Joint::AfterGap(_) => self.break_run(),
+            Joint::ClockSetBack => closed = self.clock_set(point, arrival, speeds),
+        }
+        let mut skip = 0;
+        if let Some(last_end) = self.last_end
+            && at < last_end
+        {
+            skip = ((last_end.since(at).secs() * block.rate_hz).ceil() as usize).min(count);
+            self.break_run();
+            if skip == count {
+                return Err(Taken::Late);
+            }
+        }
+        self.newest = Some((at.plus(length), arrival, length));
+        Ok((skip, closed))
     }
 
     /// When the reading in progress will have waited long enough for its last blocks.
@@ -225,8 +225,31 @@ impl PointAnalysis {
 
     /// Samples are known to be missing: the next block begins a new run.
     pub fn gap(&mut self) {
-        self.continuity.reset();
         self.break_run();
+    }
+
+    /// Our own clock was set, and stamps from now on are `jump` further on than time is: what waits goes on
+    /// waiting, and a block may be of an earlier time than the one before it.
+    pub fn wall_clock_set(&mut self, jump: Span) {
+        if let Some((_, arrival, _)) = &mut self.newest {
+            *arrival = arrival.plus(jump);
+        }
+        self.continuity.reset();
+        self.last_end = None;
+        self.break_run();
+    }
+
+    /// The sensor's clock was set back: the reading in progress ends, and earlier ones may follow.
+    fn clock_set(
+        &mut self,
+        point: &PointSpec,
+        arrival: Arrival,
+        speeds: &dyn Speeds,
+    ) -> Option<Reading> {
+        self.break_run();
+        let closed = self.close(point, arrival, speeds);
+        self.last_end = None;
+        closed
     }
 
     /// Spectra and waveform of the last reading that held a frame.
@@ -283,11 +306,10 @@ impl PointAnalysis {
         arrival: Arrival,
         speeds: &dyn Speeds,
     ) -> Option<Reading> {
-        let past = self
-            .open
-            .as_ref()
-            .is_some_and(|open| now >= open.end || now < open.start);
-        if past {
+        let (start, end) = self.open.as_ref().map(|open| (open.start, open.end))?;
+        if now < start {
+            self.clock_set(point, arrival, speeds)
+        } else if now >= end {
             self.close(point, arrival, speeds)
         } else {
             None
@@ -426,66 +448,5 @@ impl PointAnalysis {
             core::mem::swap(&mut machinery.sums, &mut machinery.last);
         }
         Some(reading)
-    }
-}
-
-impl Machinery {
-    /// Everything one full frame gives.
-    fn frame_done(&mut self, run: &mut Run, scratch: &mut Scratch) -> Result<(), FrameFault> {
-        let Self {
-            plans,
-            sums,
-            frame,
-            low_out,
-            waveform,
-            ..
-        } = self;
-        low_out.clear();
-        plans.frame.transform(frame, scratch)?;
-        plans.frame.accumulate_psd(scratch, &mut sums.psd)?;
-        if let (Some(plan), Some(envelope)) = (&plans.envelope, &mut sums.envelope) {
-            plan.accumulate(scratch, envelope)?;
-        }
-        plans.low.push_frame(scratch, &mut run.low, low_out)?;
-        let unsettled = plans
-            .low
-            .settle_samples()
-            .saturating_sub(run.low_given)
-            .min(low_out.len());
-        run.low_given = run.low_given.saturating_add(low_out.len());
-        let settled = &low_out[unsettled..];
-        sums.velocity.push(settled);
-        waveform.push(settled);
-        Ok(())
-    }
-}
-
-/// One channel of interleaved samples.
-struct Channel<'a> {
-    samples: &'a [f32],
-    channel: usize,
-    channels: usize,
-}
-
-impl Channel<'_> {
-    const fn len(&self) -> usize {
-        self.samples.len() / self.channels
-    }
-
-    /// Converts the samples from `from` on into `place`, m/s2 about the pivot.
-    fn convert(&self, from: usize, place: &mut [f32], format: Format, pivot: f32) {
-        if self.channels == 1 {
-            let samples = &self.samples[from..from + place.len()];
-            for (slot, raw) in place.iter_mut().zip(samples) {
-                *slot = format.convert(*raw, pivot);
-            }
-        } else {
-            let samples = self.samples[from * self.channels + self.channel..]
-                .iter()
-                .step_by(self.channels);
-            for (slot, raw) in place.iter_mut().zip(samples) {
-                *slot = format.convert(*raw, pivot);
-            }
-        }
     }
 }

@@ -7,19 +7,24 @@ use humward_wire::out::{Instant, Line, Measured, Quality, Severity, Zoned};
 use super::{
     Context,
     message::severity_word,
-    sentence::{clock, join, two_digits},
+    sentence::{self, clock, duration, two_digits},
     watch::Change,
     words,
 };
 use crate::{
-    plan::{Measure, PointSpec, Quantity, Race, WatchPlan, Zone},
+    plan::{Measure, PointSpec, Quantity, Race, WatchPlan, WatchSpec, Zone},
     reading::{Doubt, RaceLine, Reading, ShaftSpeed},
+    time::SignalTime,
 };
 
 /// A spectral line this near a whole multiple of shaft speed is told as that multiple.
 const WHOLE_ORDER: f64 = 0.02;
 /// Velocity lines told with an alarm.
 const LINES_TOLD: usize = 3;
+/// A line below this share of the strongest tells nothing about an alarm. Common practice, no source.
+const LEAST_SHARE: f64 = 0.05;
+/// A line with this share of the velocity carries it: half of its power. Common practice, no source.
+const CARRIES: f64 = 0.7;
 
 /// Everything an account is made from.
 #[derive(Debug, Clone, Copy)]
@@ -50,7 +55,7 @@ impl Account<'_> {
         Some(self.context.plan.spec().zones.as_ref()?.zone(velocity))
     }
 
-    fn measured(&self, measure: Measure, unit: &str) -> Option<Measured> {
+    fn further(&self, measure: Measure, unit: &str) -> Option<Measured> {
         let value = self.reading.value(measure)?;
         Some(Measured {
             measure: words::key(measure).into(),
@@ -74,8 +79,18 @@ pub(super) fn value(account: &Account<'_>) -> Measured {
     } else {
         Quality::Good
     };
+    measured(account.point(), spec, account.reading, quality)
+}
+
+/// What a watch measures, as a reading has it.
+pub(super) fn measured(
+    point: &PointSpec,
+    spec: &WatchSpec,
+    reading: &Reading,
+    quality: Quality,
+) -> Measured {
     let band = match spec.measure {
-        Measure::Band(index) => account.point().bands.get(usize::from(index)),
+        Measure::Band(index) => point.bands.get(usize::from(index)),
         Measure::VelocityRms
         | Measure::VelocityPeak
         | Measure::AccelerationRms
@@ -91,7 +106,7 @@ pub(super) fn value(account: &Account<'_>) -> Measured {
     );
     Measured {
         measure,
-        value: account.reading.value(spec.measure),
+        value: reading.value(spec.measure),
         unit: spec.quantity.unit().into(),
         quality,
     }
@@ -116,26 +131,37 @@ pub(super) fn lines(account: &Account<'_>) -> Vec<Line> {
             resolution_hz: reading.resolution_hz,
         }];
     }
+    if matches!(account.plan.spec().measure, Measure::Bearing(_)) {
+        return Vec::new();
+    }
+    let reported = matches!(reading.speed, ShaftSpeed::Reported(_)) && shaft_hz > 0.0;
+    let strongest = reading
+        .strongest
+        .first()
+        .map_or(0.0, |line| line.velocity_rms);
     let told = reading.strongest.iter().take(LINES_TOLD);
-    told.map(|line| {
-        let order = (shaft_hz > 0.0).then(|| line.frequency_hz / shaft_hz);
-        let whole =
-            order.filter(|order| (order - order.round()).abs() <= WHOLE_ORDER && *order > 0.5);
-        Line {
-            label: whole.map_or_else(
-                || "line".into(),
-                |order| format!("{:.0}x shaft", order.round()),
-            ),
-            frequency_hz: line.frequency_hz,
-            order,
-            strength_db: None,
-            strength: Some(line.velocity_rms),
-            unit: "mm/s rms".into(),
-            band_hz: [point.velocity_from_hz, 1000.0],
-            resolution_hz: reading.resolution_hz,
-        }
-    })
-    .collect()
+    let telling = told.filter(|line| line.velocity_rms >= LEAST_SHARE * strongest);
+    telling
+        .map(|line| {
+            // By the nominal speed a line would be given a name it may not have.
+            let order = reported.then(|| line.frequency_hz / shaft_hz);
+            let whole =
+                order.filter(|order| (order - order.round()).abs() <= WHOLE_ORDER && *order > 0.5);
+            Line {
+                label: whole.map_or_else(
+                    || "line".into(),
+                    |order| format!("{:.0}x shaft", order.round()),
+                ),
+                frequency_hz: line.frequency_hz,
+                order,
+                strength_db: None,
+                strength: Some(line.velocity_rms),
+                unit: "mm/s rms".into(),
+                band_hz: [point.velocity_from_hz, 1000.0],
+                resolution_hz: reading.resolution_hz,
+            }
+        })
+        .collect()
 }
 
 /// What else the reading says, the most telling first.
@@ -157,7 +183,7 @@ pub(super) fn also(account: &Account<'_>) -> Vec<Zoned> {
                 .filter(|_| zoned)
                 .map(|zone| zone.letter().into());
             Some(Zoned {
-                value: account.measured(measure, quantity.unit())?,
+                value: account.further(measure, quantity.unit())?,
                 zone,
             })
         })
@@ -190,105 +216,198 @@ pub(super) fn against(account: &Account<'_>) -> Vec<String> {
         against.push("the sensor clipped: the value is a lower bound".into());
     }
     if account.reading.gaps > 0 {
-        against.push(format!("{} gap(s) in this reading", account.reading.gaps));
+        let s = if account.reading.gaps == 1 { "" } else { "s" };
+        against.push(format!(
+            "{} gap{s} in this reading: samples are missing",
+            account.reading.gaps
+        ));
     }
     against
 }
 
-/// The sentence.
-pub(super) fn text(account: &Account<'_>, since: Option<Instant>) -> String {
-    let spec = account.plan.spec();
+/// What a sentence tells of an occurrence besides the reading.
+#[derive(Debug, Clone, Copy)]
+pub(super) struct Story {
+    /// When the condition began.
+    pub(super) since: Option<Instant>,
+    /// The last value before it, in the measure's unit.
+    pub(super) before: Option<f64>,
+    /// When the value came back.
+    pub(super) until: Option<Instant>,
+}
+
+/// The sentence: what changed, how bad, since when, on what evidence, what next.
+pub(super) fn text(account: &Account<'_>, story: &Story) -> String {
     let reading = account.reading;
-    let asset = account.context.plan.spec();
-    let began = since.map_or_else(String::new, |since| format!(" since {}", clock(since)));
-    let place = format!(
-        "{} {} {}, {}",
+    let place = sentence::place(
         severity_word(account.severity),
-        asset.id,
-        asset.name,
-        account.point().name
+        account.context.plan,
+        Some(account.point()),
     );
-    let at_least = if reading.doubts.has(Doubt::Clipped) {
-        "at least "
-    } else {
-        ""
+    let what = format!(
+        "{place}: {}{}.",
+        subject(account, story),
+        course(account, story)
+    );
+    let speed = match reading.speed {
+        ShaftSpeed::Reported(rpm) => format!("Running {rpm:.0} r/min"),
+        ShaftSpeed::Nominal(rpm) => format!("Running, speed not reported ({rpm:.0} r/min assumed)"),
     };
-    let unit = spec.quantity.unit();
-    let unit = if spec.quantity == Quantity::Ratio {
-        String::new()
+    let sensor = if reading.doubts.has(Doubt::Clipped) {
+        "sensor clipped"
     } else {
-        format!(" {unit}")
+        "sensor good"
     };
-    let said = reading
-        .value(spec.measure)
-        .map_or_else(|| "no value".into(), two_digits);
-    let limit = account.limit.map_or_else(String::new, |limit| {
-        let kind = if account.severity == Severity::Danger || account.change == Change::Eased {
-            "danger"
-        } else {
-            "alert"
-        };
-        let kind = if spec.limits.alert().is_none() {
-            "danger"
-        } else {
-            kind
-        };
-        format!(" ({kind} {})", two_digits(limit))
-    });
-    let what = match account.race() {
-        Some((race, line)) => format!(
-            "{place}: {} line at {} Hz, {said} dB over the floor{limit}, {} m/s2 rms,{began}.",
-            words::race_phrase(race),
+    let parts = [what, velocity(account), format!("{speed}, {sensor}.")];
+    match account.severity {
+        Severity::None => sentence::join(&parts),
+        Severity::Alert => sentence::with_checks(&parts, "Next", checks(account)),
+        Severity::Danger => sentence::with_checks(&parts, "Act now", checks(account)),
+    }
+}
+
+/// What to check next; nothing once it is over.
+pub(super) const fn checks(account: &Account<'_>) -> &'static [&'static str] {
+    match account.severity {
+        Severity::None => &[],
+        Severity::Alert | Severity::Danger => {
+            words::checks(account.plan.spec().measure, account.severity)
+        }
+    }
+}
+
+/// What is seen, with its value where people know one: decibels and pure numbers stay fields.
+fn subject(account: &Account<'_>, story: &Story) -> String {
+    let spec = account.plan.spec();
+    let phrase = words::phrase(spec.measure, account.point());
+    let over = account.severity != Severity::None;
+    match (spec.quantity, account.race()) {
+        (Quantity::Decibel, Some((_, line))) => format!(
+            "{phrase} at {} Hz, {} m/s2 rms in the envelope",
             two_or_more_digits(line.frequency_hz),
-            two_digits(line.ms2),
+            two_digits(line.ms2)
         ),
-        None => format!(
-            "{place}: {} {at_least}{said}{unit}{limit}{began}.",
-            words::phrase(spec.measure)
-        ),
+        (Quantity::Decibel, None) => phrase,
+        (Quantity::Ratio, _) => match account.reading.value(Measure::AccelerationPeak) {
+            Some(peak) if over => format!("{phrase}, peak {} m/s2", two_digits(peak)),
+            Some(_) | None => phrase,
+        },
+        (
+            Quantity::VelocityRms
+            | Quantity::VelocityPeak
+            | Quantity::AccelerationRms
+            | Quantity::AccelerationPeak,
+            _,
+        ) => {
+            let bound = account.reading.doubts.has(Doubt::Clipped);
+            let at_least = if bound { "at least " } else { "" };
+            let value = account.reading.value(spec.measure);
+            let said = value.map_or_else(|| "no value".into(), two_digits);
+            let limits = match account.change {
+                Change::Raised(_) | Change::Worsened => limit(account, " (", ")"),
+                Change::Eased | Change::Cleared => String::new(),
+            };
+            let risen = match (account.change, story.before.map(two_digits)) {
+                (Change::Raised(_), Some(before)) if before != said => {
+                    format!(", up from {before},")
+                }
+                _ => String::new(),
+            };
+            format!(
+                "{phrase} {at_least}{said} {}{limits}{risen}",
+                spec.quantity.unit()
+            )
+        }
+    }
+}
+
+/// The limit it is told against, with its name.
+fn limit(account: &Account<'_>, before: &str, after: &str) -> String {
+    let danger = account.severity == Severity::Danger || account.change == Change::Eased;
+    let kind = if danger || account.plan.spec().limits.alert().is_none() {
+        "danger"
+    } else {
+        "alert"
     };
-    let what = match account.change {
-        Change::Cleared => what
-            .replace(" (alert", " back below (alert")
-            .replace(" (danger", " back below (danger"),
-        Change::Eased => what.replace(" (danger", ", eased from danger (danger"),
-        Change::Raised(_) | Change::Worsened => what,
+    let said = |value| format!("{before}{kind} {}{after}", two_digits(value));
+    account.limit.map_or_else(String::new, said)
+}
+
+/// How it came to be: since when, from what, until when.
+fn course(account: &Account<'_>, story: &Story) -> String {
+    let now = Instant(account.reading.end.ns());
+    let said = |instant: Option<Instant>| {
+        instant.map_or_else(|| "an unknown time".into(), |instant| clock(instant, now))
     };
-    let velocity = match (spec.quantity, reading.value(Measure::VelocityRms)) {
-        (Quantity::VelocityRms | Quantity::VelocityPeak, _) | (_, None) => account
-            .zone()
-            .map_or_else(String::new, |zone| format!("Zone {}.", zone.letter())),
-        (_, Some(velocity)) => {
-            let zone = account
-                .zone()
-                .map_or_else(String::new, |zone| format!(", zone {}", zone.letter()));
+    let since = said(story.since);
+    let valued = match account.plan.spec().quantity {
+        Quantity::VelocityRms
+        | Quantity::VelocityPeak
+        | Quantity::AccelerationRms
+        | Quantity::AccelerationPeak => true,
+        Quantity::Ratio | Quantity::Decibel => false,
+    };
+    let below = match account.change {
+        Change::Eased if account.limit.is_none() => ", no danger limit any more".into(),
+        Change::Eased | Change::Cleared if valued => limit(account, ", below ", " again"),
+        Change::Eased => ", below danger again".into(),
+        Change::Cleared => " no longer over the limit".into(),
+        Change::Raised(_) | Change::Worsened => String::new(),
+    };
+    match account.change {
+        Change::Raised(_) => format!(" since {since}"),
+        Change::Worsened => format!(", worsened from alert, over its limits since {since}"),
+        Change::Eased => format!("{below}; the alert stands since {since}"),
+        Change::Cleared => {
+            let held = story.since.zip(story.until);
+            let held = held.map_or_else(String::new, |(since, until)| {
+                let span = SignalTime::from_ns(until.0).since(SignalTime::from_ns(since.0));
+                format!(", for {}", duration(span))
+            });
+            format!("{below}; it had been over since {since}{held}")
+        }
+    }
+}
+
+/// Velocity beside other measures, its zone, and the line that carries it.
+fn velocity(account: &Account<'_>) -> String {
+    let zone = account.zone().map(Zone::letter);
+    let Some(velocity) = account.reading.value(Measure::VelocityRms) else {
+        return String::new();
+    };
+    match account.plan.spec().measure {
+        Measure::VelocityRms | Measure::VelocityPeak => {
+            let carried = account.severity != Severity::None;
+            let line = account
+                .reading
+                .strongest
+                .first()
+                .filter(|line| carried && line.velocity_rms >= CARRIES * velocity);
+            let line = line.map(|line| {
+                let hz = two_or_more_digits(line.frequency_hz);
+                let label = lines(account).first().map(|line| line.label.clone());
+                match label.filter(|label| label != "line") {
+                    Some(label) => format!("mostly {label} ({hz} Hz)"),
+                    None => format!("mostly at {hz} Hz"),
+                }
+            });
+            match (zone, line) {
+                (Some(zone), Some(line)) => format!("Zone {zone}, {line}."),
+                (Some(zone), None) => format!("Zone {zone}."),
+                (None, Some(line)) => format!("It is {line}."),
+                (None, None) => String::new(),
+            }
+        }
+        Measure::AccelerationRms
+        | Measure::AccelerationPeak
+        | Measure::Crest
+        | Measure::Kurtosis
+        | Measure::HighBandRms
+        | Measure::Band(_)
+        | Measure::Bearing(_) => {
+            let zone = zone.map_or_else(String::new, |zone| format!(", zone {zone}"));
             format!("Velocity {} mm/s rms{zone}.", two_digits(velocity))
         }
-    };
-    let speed = match reading.speed {
-        ShaftSpeed::Reported(rpm) => format!("Running {rpm:.0} r/min, sensor good."),
-        ShaftSpeed::Nominal(rpm) => format!("Running, {rpm:.0} r/min nominal, sensor good."),
-    };
-    let speed = if reading.doubts.is_empty() {
-        speed
-    } else {
-        speed.replace("sensor good", "sensor clipped")
-    };
-    let checks = words::checks(spec.measure, account.severity);
-    let next = match account.severity {
-        Severity::None => String::new(),
-        Severity::Alert => format!("Next: {}.", checks.join(", ")),
-        Severity::Danger => format!("Act now: {}.", checks.join(", ")),
-    };
-    let shorter = match checks.first() {
-        Some(first) if account.severity != Severity::None => format!("Next: {first}."),
-        _ => String::new(),
-    };
-    let whole = join(&[what.clone(), velocity.clone(), speed.clone(), next.clone()]);
-    if whole.contains(next.as_str()) {
-        whole
-    } else {
-        join(&[what, velocity, speed, shorter])
     }
 }
 

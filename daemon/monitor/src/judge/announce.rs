@@ -94,6 +94,7 @@ impl AssetJudge {
         actions: &mut Vec<Action>,
     ) {
         self.n += 1;
+        self.changed = true;
         let id = message::event_id(context.identity, self.n);
         actions.push(Action::Event(message::asset_event(
             self,

@@ -13,6 +13,7 @@ use crate::{
 pub(super) struct Counter {
     in_row: u32,
     credit: Span,
+    held: u32,
     /// The last 64 judged readings, the newest in bit 0.
     history: u64,
     since: Option<SignalTime>,
@@ -44,6 +45,7 @@ impl Counter {
             self.in_row = 0;
             self.credit = Span::ZERO;
         }
+        self.held = self.in_row;
         let met = match persistence {
             Persistence::Readings(count) => self.in_row >= u32::from(count),
             Persistence::Time(span) => self.credit >= span,
@@ -52,7 +54,8 @@ impl Counter {
                 if seen == 0 {
                     self.since = None;
                 }
-                seen.count_ones() >= u32::from(needed)
+                self.held = seen.count_ones();
+                self.held >= u32::from(needed)
             }
         };
         if !holds && !matches!(persistence, Persistence::OutOf { .. }) {
@@ -66,9 +69,9 @@ impl Counter {
         self.since
     }
 
-    /// Readings in a row.
-    pub(super) const fn in_row(&self) -> u32 {
-        self.in_row
+    /// Readings on which it has held: those in a row, or those in the window looked back upon.
+    pub(super) const fn held(&self) -> u32 {
+        self.held
     }
 }
 

@@ -1,5 +1,8 @@
 //! Events, alarms and evidence in the words of the contract.
 
+mod held;
+mod instrument;
+
 use alloc::{
     format,
     string::{String, ToString},
@@ -10,17 +13,18 @@ use humward_wire::{
     id::Id,
     out::{
         ADVISORY, Alarm, Event, Evidence, Finding, Header, Instant, Limit, MAX_EVENT, MAX_EVIDENCE,
-        Measured, Quality, RunState, Running, Severity, Standing, State, Transition,
+        Quality, RunState, Running, Severity, Standing, State, Transition,
     },
 };
+
+pub(super) use held::{AssetChange, asset_event, held_alarm};
+pub(super) use instrument::{sensor_event, sensor_watch};
 
 use super::{
     AssetJudge, Context, Operating,
     account::{self, Account},
-    sensor::SensorChange,
     sentence,
     watch::Change,
-    words,
 };
 use crate::{
     analysis::{Taken, Traces},
@@ -28,23 +32,15 @@ use crate::{
     reading::{Reading, ShaftSpeed},
 };
 
-/// What happens to an asset as a whole.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub(super) enum AssetChange {
-    /// Judging paused.
-    Suspended,
-    /// Judging goes on.
-    Resumed,
-}
-
 /// The loss a block that was not taken whole counts under.
-pub(super) const fn loss_of(taken: Taken) -> &'static str {
+pub(super) const fn loss_of(taken: Taken) -> Option<&'static str> {
     match taken {
-        Taken::Whole => "none",
-        Taken::Late => "late",
-        Taken::Uncalibrated => "uncalibrated",
-        Taken::NoChannel => "no_channel",
-        Taken::RateUnusable => "rate_unusable",
+        Taken::Whole => None,
+        Taken::Late => Some("late"),
+        Taken::Empty => Some("no_samples"),
+        Taken::Uncalibrated => Some("uncalibrated"),
+        Taken::NoChannel => Some("no_channel"),
+        Taken::RateUnusable => Some("rate_unusable"),
     }
 }
 
@@ -55,13 +51,6 @@ pub(super) const fn gap_of(cause: GapCause) -> &'static str {
         GapCause::LinkLost => "link_lost",
         GapCause::Restart => "restart",
     }
-}
-
-/// Name of a point's instrument watch.
-pub(super) fn sensor_watch(point: &Id) -> String {
-    let mut name = format!("sensor.{point}");
-    name.truncate(64);
-    name
 }
 
 /// Id of the asset's event number `n`.
@@ -182,7 +171,8 @@ pub(super) fn watch_event(
     };
     let severity = state.severity();
     let limit = match (change, severity) {
-        (Change::Eased, _) | (_, Severity::Danger) => spec.limits.danger().or(spec.limits.alert()),
+        (Change::Eased, _) => spec.limits.danger(),
+        (_, Severity::Danger) => spec.limits.danger().or(spec.limits.alert()),
         _ => spec.limits.alert().or(spec.limits.danger()),
     };
     let account = Account {
@@ -194,8 +184,15 @@ pub(super) fn watch_event(
         severity,
     };
     let since = occurrence.map(|open| Instant(open.since.ns()));
+    let before = occurrence.and_then(|open| open.before);
+    let until = state.back_since().map(|back| Instant(back.ns()));
+    let story = account::Story {
+        since,
+        before,
+        until,
+    };
     let finding = Finding {
-        text: account::text(&account, since),
+        text: account::text(&account, &story),
         occurrence: occurrence.and_then(|open| open.id.clone()),
         point: Some(context.plan.spec().points[spec.point].id().clone()),
         watch: Some(plan.full_name().into()),
@@ -209,13 +206,10 @@ pub(super) fn watch_event(
         lines: account::lines(&account),
         also: account::also(&account),
         against: account::against(&account),
-        checks: match severity {
-            Severity::None => Vec::new(),
-            Severity::Alert | Severity::Danger => words::checks(spec.measure, severity)
-                .iter()
-                .map(ToString::to_string)
-                .collect(),
-        },
+        checks: account::checks(&account)
+            .iter()
+            .map(ToString::to_string)
+            .collect(),
         ..bare(
             judge,
             Standing::new(kind, severity),
@@ -247,173 +241,6 @@ pub(super) fn alarm_of(event: &Event) -> Alarm {
     .0
 }
 
-/// The event of a point's instrument watch.
-pub(super) fn sensor_event(
-    judge: &AssetJudge,
-    context: Context<'_>,
-    point: usize,
-    change: SensorChange,
-    id: Id,
-) -> Event {
-    let plan = context.plan.spec().points[point].spec();
-    let open = judge.sensors[point].open();
-    let since = open.map(|open| Instant(open.since.ns()));
-    let place = format!(
-        "{} {}, {}",
-        context.plan.id(),
-        context.plan.spec().name,
-        plan.name
-    );
-    let (transition, standing, text, checks) = match change {
-        SensorChange::Raised(cause) => {
-            let began = since.map_or_else(String::new, |since| {
-                format!(" since {}", sentence::clock(since))
-            });
-            let what = format!("ALERT {place}: its sensor {}{began}.", words::cause(cause));
-            let checks = words::sensor_checks(cause);
-            let unwatched =
-                "The machine is not judged at this point: silence is not health.".to_string();
-            let next = format!("Next: {}.", checks.join(", "));
-            let standing = Standing::new(State::Unack, Severity::Alert);
-            (
-                Transition::Raised,
-                standing,
-                sentence::join(&[what, unwatched, next]),
-                checks,
-            )
-        }
-        SensorChange::Cleared => {
-            let what = format!("CLEARED {place}: its sensor is good again.");
-            let standing = Standing::new(State::Norm, Severity::None);
-            (
-                Transition::Cleared,
-                standing,
-                sentence::join(&[what]),
-                [].as_slice(),
-            )
-        }
-    };
-    let finding = Finding {
-        occurrence: open.and_then(|open| open.id.clone()),
-        point: Some(plan.id.clone()),
-        watch: Some(sensor_watch(&plan.id)),
-        since,
-        checks: checks.iter().map(ToString::to_string).collect(),
-        ..bare(judge, standing, None, text)
-    };
-    event(
-        context,
-        judge.n,
-        id,
-        Instant(context.arrival.ns()),
-        transition,
-        finding,
-    )
-}
-
-/// The event of an asset whose judging paused or goes on.
-pub(super) fn asset_event(
-    judge: &AssetJudge,
-    context: Context<'_>,
-    change: AssetChange,
-    id: Id,
-) -> Event {
-    let open = judge
-        .watches
-        .iter()
-        .filter(|watch| watch.occurrence().is_some())
-        .count();
-    let worst = judge
-        .watches
-        .iter()
-        .map(super::watch::WatchState::severity)
-        .max()
-        .unwrap_or(Severity::None);
-    let place = format!("{} {}", context.plan.id(), context.plan.spec().name);
-    let (transition, state, text) = match change {
-        AssetChange::Suspended => (
-            Transition::Suspended,
-            State::Dsupr,
-            format!("SUSPENDED {place}: it does not run; {open} open alarm(s) held, not ended."),
-        ),
-        AssetChange::Resumed => (
-            Transition::Resumed,
-            State::Unack,
-            format!("RESUMED {place}: it runs again; {open} held alarm(s) go on."),
-        ),
-    };
-    let at = judge
-        .running
-        .since()
-        .map_or(context.arrival.ns(), |since| since.ns());
-    let finding = bare(
-        judge,
-        Standing::new(state, worst),
-        None,
-        sentence::join(&[text]),
-    );
-    event(context, judge.n, id, Instant(at), transition, finding)
-}
-
-/// The retained state of an open occurrence whose judging paused or goes on; `None` where nothing is open.
-pub(super) fn held_alarm(
-    judge: &AssetJudge,
-    context: Context<'_>,
-    index: usize,
-    change: AssetChange,
-    id: Id,
-) -> Option<Alarm> {
-    let state = &judge.watches[index];
-    let occurrence = state.occurrence()?;
-    let plan = &context.plan.spec().watches[index];
-    let reading = judge.last_running[plan.spec().point].as_ref();
-    let (kind, word) = match change {
-        AssetChange::Suspended => (State::Dsupr, "held while the machine does not run"),
-        AssetChange::Resumed => (State::Unack, "open, the machine runs again"),
-    };
-    let since = Instant(occurrence.since.ns());
-    let place = format!("{} {}", context.plan.id(), context.plan.spec().name);
-    let severity = severity_word(state.severity());
-    let text = format!(
-        "{severity} {place}, {}: {word}, since {}.",
-        context.plan.spec().points[plan.spec().point].spec().name,
-        sentence::clock(since)
-    );
-    let value = reading
-        .and_then(|reading| reading.value(plan.spec().measure))
-        .map(|value| Measured {
-            measure: words::key(plan.spec().measure).into(),
-            value: Some(value),
-            unit: plan.spec().quantity.unit().into(),
-            quality: Quality::Stale,
-        });
-    let finding = Finding {
-        occurrence: occurrence.id.clone(),
-        point: Some(context.plan.spec().points[plan.spec().point].id().clone()),
-        watch: Some(plan.full_name().into()),
-        value,
-        since: Some(since),
-        ..bare(
-            judge,
-            Standing::new(kind, state.severity()),
-            None,
-            sentence::join(&[text]),
-        )
-    };
-    let mut header = header(context, Instant(context.arrival.ns()));
-    header.schema = <Alarm as humward_wire::out::Message>::SCHEMA.into();
-    Some(
-        Alarm {
-            header,
-            n: judge.n,
-            event: id,
-            finding,
-        }
-        .fit(MAX_EVENT)
-        .0,
-    )
-}
-
 /// The event of an occurrence whose watch or asset is no longer in the plan.
 pub(super) fn withdrawn_event(
     judge: &AssetJudge,
@@ -422,10 +249,9 @@ pub(super) fn withdrawn_event(
     occurrence: Option<Id>,
     id: Id,
 ) -> Event {
-    let place = format!("{} {}", context.plan.id(), context.plan.spec().name);
-    let text = sentence::join(&[format!(
-        "WITHDRAWN {place}: {watch} is no longer in the configuration."
-    )]);
+    let place = sentence::place("WITHDRAWN", context.plan, None);
+    let what = format!("{place}: {watch} is no longer in the configuration, its alarm is closed.");
+    let text = sentence::join(&[what]);
     let finding = Finding {
         occurrence,
         watch: Some(watch.into()),

@@ -2,62 +2,58 @@
 
 use alloc::vec::Vec;
 
-use humward_wire::id::Id;
-
-use super::{AssetJudge, Context, Tally, message, sensor::SensorState, watch::WatchState};
+use super::{AssetJudge, Context, Judging, Tally, message, sensor::SensorState, watch::WatchState};
 use crate::{
     action::Action,
-    plan::{AssetPlan, WatchPlan},
+    plan::{AssetPlan, BandPlan, Measure, PointPlan, WatchPlan},
     reading::Reading,
 };
 
 impl AssetJudge {
-    /// Goes over to another plan of the same asset: unchanged watches and points keep their state, an open
-    /// occurrence whose watch is gone is withdrawn with an event and its alarm emptied.
+    /// Goes over to another plan of the same asset.
+    ///
+    /// A watch of the same name and measure keeps its open occurrence and is held against the new limits from now
+    /// on; where anything it is judged by has changed its timers start anew. An open occurrence whose watch is
+    /// gone is withdrawn with an event and its alarm emptied. What a point last read stays with an unchanged point.
     pub fn replan(&mut self, old: &AssetPlan, context: Context<'_>, actions: &mut Vec<Action>) {
-        let kept = |plan: &AssetPlan, id: &Id| {
-            plan.spec().points.iter().position(|point| point.id() == id)
-        };
-        for index in 0..self.watches.len() {
-            let gone = !context
-                .plan
-                .spec()
+        let (before, now) = (old.spec(), context.plan.spec());
+        for (index, watch) in before.watches.iter().enumerate() {
+            if !now
                 .watches
                 .iter()
-                .any(|watch| same_watch(old, context.plan, index, watch));
-            if gone {
+                .any(|new| is_same(old, watch, context.plan, new))
+            {
                 self.withdraw(old, context, index, actions);
             }
         }
-        let watches = context.plan.spec().watches.iter().map(|watch| {
-            let before =
-                (0..self.watches.len()).find(|index| same_watch(old, context.plan, *index, watch));
-            before.map_or_else(WatchState::default, |index| self.watches[index].clone())
+        let watches = now.watches.iter().map(|new| {
+            let same = |watch: &WatchPlan| is_same(old, watch, context.plan, new);
+            let Some(place) = before.watches.iter().position(same) else {
+                return WatchState::default();
+            };
+            let mut state = self.watches[place].clone();
+            if !judges_alike(old, &before.watches[place], context.plan, new) {
+                state.restart_timers();
+            }
+            state
         });
-        let watches = watches.collect();
-        for (index, point) in old.spec().points.iter().enumerate() {
-            if kept(context.plan, point.id()).is_none() && self.sensors[index].open().is_some() {
+        self.watches = watches.collect();
+        let kept = |point: &PointPlan| before.points.iter().position(|old| old.id() == point.id());
+        let places: Vec<Option<usize>> = now.points.iter().map(kept).collect();
+        for index in 0..before.points.len() {
+            if !places.contains(&Some(index)) {
                 self.sensor_withdrawn(old, context, index, actions);
             }
         }
-        let points = context
-            .plan
-            .spec()
-            .points
-            .iter()
-            .map(|point| kept(old, point.id()));
-        let places: Vec<Option<usize>> = points.collect();
-        let take = |place: &Option<usize>, from: &[Option<Reading>]| {
-            place.and_then(|place| from[place].clone())
+        let unchanged = |new: usize| {
+            places[new].filter(|place| reads_alike(&before.points[*place], &now.points[new]))
         };
-        self.latest = places
-            .iter()
-            .map(|place| take(place, &self.latest))
-            .collect();
-        self.last_running = places
-            .iter()
-            .map(|place| take(place, &self.last_running))
-            .collect();
+        let readings = |from: &[Option<Reading>]| {
+            let points = 0..places.len();
+            points.map(|new| from[unchanged(new)?].clone()).collect()
+        };
+        self.latest = readings(&self.latest);
+        self.last_running = readings(&self.last_running);
         let sensor = |place: &Option<usize>| {
             place.map_or_else(
                 || SensorState::new(context.arrival),
@@ -66,7 +62,9 @@ impl AssetJudge {
         };
         self.sensors = places.iter().map(sensor).collect();
         self.tallies = alloc::vec![Tally::default(); places.len()];
-        self.watches = watches;
+        if matches!(self.judging, Judging::Resuming { .. }) && !self.any_open() {
+            self.judging = Judging::On;
+        }
         self.changed = true;
     }
 
@@ -76,9 +74,7 @@ impl AssetJudge {
             self.withdraw(context.plan, context, index, actions);
         }
         for point in 0..self.sensors.len() {
-            if self.sensors[point].open().is_some() {
-                self.sensor_withdrawn(context.plan, context, point, actions);
-            }
+            self.sensor_withdrawn(context.plan, context, point, actions);
         }
     }
 
@@ -127,17 +123,49 @@ impl AssetJudge {
     }
 }
 
-/// Whether `watch` of the new plan is the old plan's watch `index`, unchanged.
-fn same_watch(old: &AssetPlan, new: &AssetPlan, index: usize, watch: &WatchPlan) -> bool {
-    let before = &old.spec().watches[index];
-    let point = |plan: &AssetPlan, watch: &WatchPlan| {
-        let point = &plan.spec().points[watch.spec().point];
-        (
-            point.clone(),
-            watch.spec().limits,
-            watch.spec().measure,
-            watch.spec().at_least_ms2,
-        )
+/// Whether two watches ask the same question: same name at the same point, same measure.
+fn is_same(old: &AssetPlan, before: &WatchPlan, new: &AssetPlan, now: &WatchPlan) -> bool {
+    let measure = match (band(old, before), band(new, now)) {
+        (None, None) => before.spec().measure == now.spec().measure,
+        (before, now) => before == now,
     };
-    before.full_name() == watch.full_name() && point(old, before) == point(new, watch)
+    before.full_name() == now.full_name() && measure
+}
+
+/// The band a watch is about, if it is about one.
+fn band<'a>(plan: &'a AssetPlan, watch: &WatchPlan) -> Option<&'a BandPlan> {
+    match watch.spec().measure {
+        Measure::Band(index) => {
+            let bands = &plan.spec().points[watch.spec().point].spec().bands;
+            bands.get(usize::from(index))
+        }
+        Measure::VelocityRms
+        | Measure::VelocityPeak
+        | Measure::AccelerationRms
+        | Measure::AccelerationPeak
+        | Measure::Crest
+        | Measure::Kurtosis
+        | Measure::HighBandRms
+        | Measure::Bearing(_) => None,
+    }
+}
+
+/// Whether a reading means the same to both: limits, persistence and how the point reads.
+fn judges_alike(old: &AssetPlan, before: &WatchPlan, new: &AssetPlan, now: &WatchPlan) -> bool {
+    let rules = |watch: &WatchPlan| {
+        let spec = watch.spec();
+        let after = (spec.alert_after, spec.danger_after, spec.clear_after);
+        (spec.limits, spec.at_least_ms2, after)
+    };
+    let (then, point) = (&old.spec().points, &new.spec().points);
+    rules(before) == rules(now)
+        && old.spec().reading_every == new.spec().reading_every
+        && reads_alike(&then[before.spec().point], &point[now.spec().point])
+}
+
+/// Whether a point reads as before; what people call it does not matter.
+fn reads_alike(before: &PointPlan, now: &PointPlan) -> bool {
+    let mut spec = now.spec().clone();
+    spec.name.clone_from(&before.spec().name);
+    *before.spec() == spec
 }

@@ -34,21 +34,36 @@ pub struct SpeedTrack {
 }
 
 impl SpeedTrack {
-    /// Takes in one report, r/min; one older than what is there is put in its place.
-    pub fn report(&mut self, at: SignalTime, rpm: f64) {
+    /// Takes in one report, r/min; one older than what is there is put in its place. `true` when it is the newest.
+    pub fn report(&mut self, at: SignalTime, rpm: f64) -> bool {
         let place = self.reports.partition_point(|(earlier, _)| *earlier <= at);
+        let newest = place == self.reports.len();
         if place > 0 && self.reports[place - 1] == (at, rpm) {
-            return;
+            return newest;
         }
         if self.reports.len() == SPEEDS_KEPT {
             if place == 0 {
-                return;
+                return newest;
             }
             self.reports.remove(0);
             self.reports.insert(place - 1, (at, rpm));
         } else {
             self.reports.insert(place, (at, rpm));
         }
+        newest
+    }
+
+    /// Moves all reports to `back` earlier: the clock they were made by was set back.
+    pub fn set_back(&mut self, back: Span) {
+        for (at, _) in &mut self.reports {
+            *at = at.minus(back);
+        }
+    }
+
+    /// The newest report, if not older than `valid` at `now`.
+    pub fn latest(&self, now: SignalTime, valid: Span) -> Option<f64> {
+        let (at, rpm) = *self.reports.last()?;
+        (now.since(at) <= valid).then_some(rpm)
     }
 
     /// The latest report at or before `at`, if not older than `valid`.
@@ -105,6 +120,11 @@ impl RunningState {
     /// Whether it ran from `start` on without a break until now.
     pub(super) fn ran_from(&self, start: SignalTime) -> bool {
         self.state == Operating::Running && self.since.is_some_and(|since| since <= start)
+    }
+
+    /// Moves its beginning to `back` earlier: the clock it was told by was set back.
+    pub(super) fn set_back(&mut self, back: Span) {
+        self.since = self.since.map(|since| since.minus(back));
     }
 
     /// A speed was reported; `true` when the state changed by it.
@@ -179,7 +199,7 @@ mod tests {
     #[test]
     fn a_speed_report_goes_stale() {
         let mut speeds = SpeedTrack::default();
-        speeds.report(at(10), 1480.0);
+        assert!(speeds.report(at(10), 1480.0));
         assert_eq!(speeds.fresh(at(70), Span::from_secs(60)), Some(1480.0));
         assert_eq!(speeds.fresh(at(71), Span::from_secs(60)), None);
         assert_eq!(speeds.fresh(at(9), Span::from_secs(60)), None);
@@ -188,9 +208,8 @@ mod tests {
     #[test]
     fn a_late_report_is_put_in_its_place() {
         let mut speeds = SpeedTrack::default();
-        for s in [30, 10, 20, 20] {
-            speeds.report(at(s), s as f64);
-        }
+        let newest = [30, 10, 20, 20].map(|s| speeds.report(at(s), s as f64));
+        assert_eq!(newest, [true, false, false, false]);
         assert_eq!(speeds.fresh(at(25), Span::from_secs(60)), Some(20.0));
         assert_eq!(speeds.reports.len(), 3);
     }

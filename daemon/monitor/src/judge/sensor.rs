@@ -1,7 +1,8 @@
 //! The instrument alarm of one point: its sensor, cable or link does not give what can be judged.
 //!
 //! Goes by arrival time, because a dead sensor has no time of its own. Raised when nothing usable has come for
-//! as long as the plan allows; cleared when good readings have come for as long again.
+//! as long as the plan allows, or nothing but doubtful readings; cleared when good ones have come for as long again.
+//! What is missing by our own doing, and one code for ever on a machine that stands still, are no fault of a sensor.
 
 use humward_wire::{id::Id, refusal::Refusal};
 
@@ -25,6 +26,8 @@ pub(super) enum Cause {
     NoChannel,
     /// Its blocks' rate cannot serve the point.
     RateUnusable,
+    /// Its blocks hold no samples.
+    Empty,
     /// Its readings are doubtful.
     Doubtful(Doubt),
 }
@@ -49,12 +52,24 @@ pub(super) struct SensorOccurrence {
     pub(super) cause: Cause,
 }
 
+/// Doubtful readings in a row, at the least two.
+#[derive(Debug, Clone, Copy, PartialEq)]
+struct Doubtful {
+    since: Arrival,
+    cause: Cause,
+    /// A single doubtful reading is no alarm, however long a reading is.
+    least: Span,
+}
+
 /// State of one point's instrument alarm.
 #[derive(Debug, Clone, PartialEq)]
 pub(super) struct SensorState {
     usable: Arrival,
-    bad: Option<(Arrival, Cause)>,
-    why_not_usable: Cause,
+    doubtful: Option<Doubtful>,
+    /// The newest payload that was of no use.
+    useless: Option<(Arrival, Cause)>,
+    /// Samples of the reading in progress are missing by our own doing.
+    our_gap: bool,
     good_since: Option<Arrival>,
     open: Option<SensorOccurrence>,
 }
@@ -64,8 +79,9 @@ impl SensorState {
     pub(super) const fn new(from: Arrival) -> Self {
         Self {
             usable: from,
-            bad: None,
-            why_not_usable: Cause::Silent,
+            doubtful: None,
+            useless: None,
+            our_gap: false,
             good_since: None,
             open: None,
         }
@@ -83,48 +99,69 @@ impl SensorState {
         }
     }
 
-    /// Forgets the silence up to `now`: the link was down, the sensor is not to blame.
+    /// Forgets what was wrong up to `now`: the link was down, the sensor is not to blame.
     pub(super) fn excuse(&mut self, now: Arrival) {
         self.usable = now;
-        self.why_not_usable = Cause::Silent;
+        self.useless = None;
+        self.doubtful = None;
+        self.our_gap = true;
+    }
+
+    /// We let samples go, or could not receive them: the reading they are missing from is no fault of the sensor.
+    pub(super) const fn our_gap(&mut self) {
+        self.our_gap = true;
+    }
+
+    /// Our stamps jumped by `jump`: whatever waits goes on waiting as long as before.
+    pub(super) fn wall_clock_set(&mut self, jump: Span) {
+        self.usable = self.usable.plus(jump);
+        if let Some(doubtful) = &mut self.doubtful {
+            doubtful.since = doubtful.since.plus(jump);
+        }
+        self.useless = self.useless.map(|(at, cause)| (at.plus(jump), cause));
+        self.good_since = self.good_since.map(|since| since.plus(jump));
     }
 
     /// A usable block came.
-    pub(super) fn block(&mut self, now: Arrival) {
+    pub(super) const fn block(&mut self, now: Arrival) {
         self.usable = now;
-        self.why_not_usable = Cause::Silent;
     }
 
-    /// A block came that is of no use.
-    pub(super) fn useless(&mut self, cause: Cause) {
-        self.why_not_usable = cause;
-        self.good_since = None;
+    /// Something came that is of no use. A doubled or late block among good ones is no fault.
+    pub(super) fn useless(&mut self, now: Arrival, cause: Cause) {
+        self.useless = Some((now, cause));
+        if cause != Cause::Late {
+            self.good_since = None;
+        }
     }
 
     /// A reading was closed; it clears the alarm when good ones have come for `after`.
-    pub(super) fn reading(&mut self, reading: &Reading, after: Span) -> Option<SensorChange> {
+    pub(super) fn reading(
+        &mut self,
+        reading: &Reading,
+        after: Span,
+        stands_still: bool,
+    ) -> Option<SensorChange> {
         let now = reading.closed;
-        // A reading that is short because the stream has only begun or has a known hole is not the sensor's fault.
-        let blame = reading
-            .doubts
-            .iter()
-            .find(|doubt| doubt.is_instrument() && *doubt != Doubt::Short);
-        match blame {
+        let our_gap = core::mem::take(&mut self.our_gap);
+        let blames = |doubt: &Doubt| doubt.is_instrument() && *doubt != Doubt::Short;
+        let short = reading.doubts.has(Doubt::Short).then_some(Doubt::Short);
+        match reading.doubts.iter().find(blames).or(short) {
+            Some(Doubt::Flat) if stands_still => None,
+            Some(Doubt::Short) if our_gap => None,
             Some(doubt) => {
                 self.good_since = None;
-                let since = self.bad.map_or(now, |(since, _)| since);
-                self.bad = Some((since, Cause::Doubtful(doubt)));
+                self.doubtful = Some(Doubtful {
+                    since: self.doubtful.map_or(now, |before| before.since),
+                    cause: Cause::Doubtful(doubt),
+                    least: reading.length().times(2),
+                });
                 None
             }
-            None if reading.doubts.has(Doubt::Short) => None,
             None => {
-                self.bad = None;
+                self.doubtful = None;
                 let since = *self.good_since.get_or_insert(now);
-                if self.open.is_some() && now.since(since) >= after {
-                    Some(SensorChange::Cleared)
-                } else {
-                    None
-                }
+                (self.open.is_some() && now.since(since) >= after).then_some(SensorChange::Cleared)
             }
         }
     }
@@ -136,16 +173,19 @@ impl SensorState {
         }
         let silent = self.usable.plus(after);
         Some(
-            self.bad
-                .map_or(silent, |(since, _)| silent.min(since.plus(after))),
+            self.doubtful
+                .map_or(silent, |doubtful| silent.min(doubtful.due(after))),
         )
     }
 
     /// Opens the alarm that has become due.
     pub(super) fn raise(&mut self, now: Arrival, after: Span) -> SensorChange {
-        let (since, cause) = match self.bad {
-            Some((since, cause)) if since.plus(after) <= now => (since, cause),
-            _ => (self.usable, self.why_not_usable),
+        let doubtful = self.doubtful.filter(|doubtful| doubtful.due(after) <= now);
+        let (since, cause) = match (doubtful, self.useless) {
+            (Some(doubtful), _) => (doubtful.since, doubtful.cause),
+            // What came in the first half of the silence does not explain the rest of it.
+            (None, Some((at, cause))) if now.since(at).times(2) <= after => (self.usable, cause),
+            (None, _) => (self.usable, Cause::Silent),
         };
         self.good_since = None;
         self.open = Some(SensorOccurrence {
@@ -158,12 +198,18 @@ impl SensorState {
 
     /// Takes out the occurrence that has cleared.
     pub(super) fn take_closed(&mut self) -> Option<SensorOccurrence> {
-        self.bad = None;
+        self.doubtful = None;
         self.open.take()
     }
 
     /// Whether what comes now is usable.
     pub(super) const fn good(&self) -> bool {
-        self.open.is_none() && self.bad.is_none()
+        self.open.is_none() && self.doubtful.is_none()
+    }
+}
+
+impl Doubtful {
+    fn due(&self, after: Span) -> Arrival {
+        self.since.plus(after.max(self.least))
     }
 }

@@ -6,6 +6,11 @@ use alloc::{format, string::String};
 
 use humward_wire::out::{Instant, MAX_TEXT};
 
+use crate::{
+    plan::{AssetPlan, PointSpec},
+    time::{SECOND, Span},
+};
+
 /// The standing last words; they are never cut.
 const LAST_WORDS: &str = "Advisory only.";
 
@@ -26,21 +31,55 @@ pub(super) fn two_digits(value: f64) -> String {
     }
 }
 
-/// The time of day in UTC to the minute.
-pub(super) fn clock(instant: Instant) -> String {
-    let text = format!("{instant}");
-    text.get(11..16)
-        .map_or(text.clone(), |clock| format!("{clock} UTC"))
+/// The time of day in UTC to the minute; with its date when that is not the date of `now`.
+pub(super) fn clock(instant: Instant, now: Instant) -> String {
+    let (text, today) = (format!("{instant}"), format!("{now}"));
+    let (Some(date), Some(time)) = (text.get(..10), text.get(11..16)) else {
+        return text;
+    };
+    if today.starts_with(date) {
+        format!("{time} UTC")
+    } else {
+        format!("{date} {time} UTC")
+    }
+}
+
+/// A length of time in the unit in which it is at least two, rounded down.
+pub(super) fn duration(span: Span) -> String {
+    let seconds = span.ns() / SECOND;
+    let units = [("d", 86_400), ("h", 3600), ("min", 60)];
+    let unit = units.into_iter().find(|(_, unit)| seconds >= 2 * unit);
+    unit.map_or_else(
+        || format!("{seconds} s"),
+        |(name, unit)| format!("{} {name}", seconds / unit),
+    )
+}
+
+/// Longest name of an asset or point in a sentence, in characters.
+const LONGEST_NAME: usize = 60;
+
+/// What a sentence begins with: a word, the asset's tag and name, and the point's name.
+pub(super) fn place(word: &str, asset: &AssetPlan, point: Option<&PointSpec>) -> String {
+    let spec = asset.spec();
+    let point = point.map_or_else(String::new, |point| format!(", {}", short(&point.name)));
+    format!("{word} {} {}{point}", spec.id, short(&spec.name))
+}
+
+fn short(name: &str) -> String {
+    let mut characters = name.chars();
+    let mut begin: String = characters.by_ref().take(LONGEST_NAME).collect();
+    if characters.next().is_some() {
+        begin.pop();
+        begin.push('\u{2026}');
+    }
+    begin
 }
 
 /// Joins parts with spaces and ends with the standing words; parts that no longer fit are left out from the end.
 pub(super) fn join(parts: &[String]) -> String {
     let mut sentence = String::new();
-    for part in parts {
-        if part.is_empty() {
-            continue;
-        }
-        if sentence.chars().count() + part.chars().count() + LAST_WORDS.len() + 2 > MAX_TEXT {
+    for part in parts.iter().filter(|part| !part.is_empty()) {
+        if !fits(&sentence, part) {
             break;
         }
         sentence.push_str(part);
@@ -50,11 +89,30 @@ pub(super) fn join(parts: &[String]) -> String {
     sentence
 }
 
+/// As [`join`], with as many checks after them as fit, the most telling first.
+pub(super) fn with_checks(parts: &[String], lead: &str, checks: &[&str]) -> String {
+    let mut all = parts.to_vec();
+    let whole: usize = parts.iter().map(|part| part.chars().count() + 1).sum();
+    for count in (1..=checks.len()).rev() {
+        let next = format!("{lead}: {}.", checks[..count].join(", "));
+        if whole + next.chars().count() + 1 + LAST_WORDS.len() <= MAX_TEXT {
+            all.push(next);
+            break;
+        }
+    }
+    join(&all)
+}
+
+fn fits(sentence: &str, part: &str) -> bool {
+    sentence.chars().count() + part.chars().count() + 1 + LAST_WORDS.len() <= MAX_TEXT
+}
+
 #[cfg(test)]
 mod tests {
-    use super::{clock, join, two_digits};
+    use super::{clock, duration, join, short, two_digits, with_checks};
+    use crate::time::Span;
     use alloc::string::ToString;
-    use humward_wire::out::Instant;
+    use humward_wire::out::{Instant, MAX_TEXT};
 
     #[test]
     fn values_are_said_with_two_digits() {
@@ -63,13 +121,46 @@ mod tests {
     }
 
     #[test]
-    fn the_clock_is_utc_to_the_minute() {
-        assert_eq!(clock(Instant(1_764_547_200_000_000_000)), "00:00 UTC");
+    fn the_clock_is_utc_to_the_minute_and_tells_another_day() {
+        let then = Instant(1_764_547_200_000_000_000);
+        let later = Instant(then.0 + 86_400_000_000_000);
+        assert_eq!(clock(then, then), "00:00 UTC");
+        assert_eq!(clock(then, later), "2025-12-01 00:00 UTC");
+    }
+
+    #[test]
+    fn a_duration_is_at_least_two_of_its_unit() {
+        let said =
+            [0, 119, 120, 7199, 7200, 172_799, 172_800].map(|s| duration(Span::from_secs(s)));
+        assert_eq!(
+            said,
+            ["0 s", "119 s", "2 min", "119 min", "2 h", "47 h", "2 d"]
+        );
     }
 
     #[test]
     fn a_long_part_is_left_out_and_the_last_words_stay() {
         let long = "x".repeat(290);
         assert_eq!(join(&["Short.".to_string(), long]), "Short. Advisory only.");
+    }
+
+    #[test]
+    fn checks_are_told_as_far_as_they_fit() {
+        let part = ["x".repeat(250)];
+        let said = with_checks(&part, "Next", &["look here", "and there", "and everywhere"]);
+        assert!(
+            said.ends_with("Next: look here, and there. Advisory only."),
+            "{said}"
+        );
+        assert!(said.len() <= MAX_TEXT);
+        let part = ["x".repeat(284)];
+        assert_eq!(with_checks(&part, "Next", &["look"]).len(), 284 + 15);
+    }
+
+    #[test]
+    fn a_long_name_is_cut_where_a_character_ends() {
+        let name = "\u{fc}".repeat(80);
+        assert_eq!(short(&name).chars().count(), 60);
+        assert_eq!(short("pump"), "pump");
     }
 }

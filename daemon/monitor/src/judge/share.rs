@@ -17,7 +17,7 @@ pub(super) struct JudgedShare {
 impl JudgedShare {
     /// A reading of `length` ended at `end`; `judged` when its limits were.
     pub(super) fn reading(&mut self, end: SignalTime, length: Span, judged: bool) {
-        let hour = (end.ns() - 1).div_euclid(HOUR_NS);
+        let hour = hour_of(end);
         if self.first.is_none() {
             self.first = Some(end.minus(length));
         }
@@ -34,27 +34,32 @@ impl JudgedShare {
         }
     }
 
-    /// Judged time over watched time, at most the last 24 hours of it; `points` share one clock. `None` in the first hour.
-    pub(super) fn share(&self, points: usize) -> Option<f64> {
-        let watched = self.last?.since(self.first?);
-        if watched.ns() < HOUR_NS {
+    /// Judged time over watched time up to `now`, at most the last 24 hours of it; `points` share one clock.
+    /// `None` in the first hour.
+    pub(super) fn share(&self, points: usize, now: SignalTime) -> Option<f64> {
+        let first = self.first?;
+        let now = self.last?.max(now);
+        if now.since(first).ns() < HOUR_NS {
             return None;
         }
         let newest = self.hour?;
+        let (this_hour, first_hour) = (hour_of(now), hour_of(first));
         // The oldest hour is only partly in the window: it is left out, with its time.
-        let hours: i64 = (HOURS as i64 - 1).min(newest - self.first?.ns().div_euclid(HOUR_NS));
+        let hours = (HOURS as i64 - 1).min(this_hour - first_hour);
         let judged: i64 = (0..=hours)
-            .map(|ago| self.judged[place(newest - ago)])
+            .map(|ago| this_hour - ago)
+            .filter(|hour| (newest - HOURS as i64 + 1..=newest).contains(hour))
+            .map(|hour| self.judged[place(hour)])
             .sum();
-        let into_hour = self.last?.ns() - newest * HOUR_NS;
-        let before_first = if hours == newest - self.first?.ns().div_euclid(HOUR_NS) {
-            self.first?.ns().rem_euclid(HOUR_NS)
-        } else {
-            0
-        };
-        let window = hours * HOUR_NS + into_hour - before_first;
+        let begin = Ord::max(first.ns(), (this_hour - hours).saturating_mul(HOUR_NS));
+        let window = now.since(SignalTime::from_ns(begin)).ns();
         Some((judged as f64 / window as f64 / points.max(1) as f64).clamp(0.0, 1.0))
     }
+}
+
+/// The hour an instant lies in, or ends.
+const fn hour_of(instant: SignalTime) -> i64 {
+    instant.ns().saturating_sub(1).div_euclid(HOUR_NS)
 }
 
 const fn place(hour: i64) -> usize {
@@ -71,16 +76,13 @@ mod tests {
         let mut share = JudgedShare::default();
         let ten = Span::from_secs(10);
         for k in 1..=30 * 360 {
-            share.reading(
-                SignalTime::from_ns(7 * HOUR_NS + 123 * SECOND + k * 10 * SECOND),
-                ten,
-                k % 2 == 0,
-            );
+            let end = SignalTime::from_ns(7 * HOUR_NS + 123 * SECOND + k * 10 * SECOND);
+            share.reading(end, ten, k % 2 == 0);
             if k == 300 {
-                assert_eq!(share.share(1), None, "less than an hour is no share");
+                assert_eq!(share.share(1, end), None, "less than an hour is no share");
             }
             if k % 500 == 0 && k > 500 {
-                let read = share.share(1).unwrap();
+                let read = share.share(1, end).unwrap();
                 assert!((read - 0.5).abs() < 0.005, "{k}: {read}");
             }
         }
@@ -93,8 +95,10 @@ mod tests {
         for k in 1..=720 {
             share.reading(SignalTime::from_ns(k * 10 * SECOND), ten, true);
         }
-        assert!(share.share(1).unwrap() > 0.99);
+        assert!(share.share(1, SignalTime::from_ns(2 * HOUR_NS)).unwrap() > 0.99);
+        let half = share.share(1, SignalTime::from_ns(4 * HOUR_NS)).unwrap();
+        assert!((half - 0.5).abs() < 0.001, "two silent hours count: {half}");
         share.reading(SignalTime::from_ns(60 * HOUR_NS), ten, false);
-        assert_eq!(share.share(1), Some(0.0));
+        assert_eq!(share.share(1, SignalTime::from_ns(60 * HOUR_NS)), Some(0.0));
     }
 }

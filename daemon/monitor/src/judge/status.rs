@@ -15,7 +15,6 @@ use super::{
 use crate::{
     plan::{Measure, Quantity, Race},
     reading::{Doubt, Reading, ShaftSpeed},
-    time::Arrival,
 };
 
 /// Readings a point may miss before its answers count as stale.
@@ -35,11 +34,6 @@ pub(super) fn status(judge: &AssetJudge, context: Context<'_>) -> Status {
         .plus(spec.reading_every.times(STALE_READINGS));
     let open = open(judge, context);
     let runs = judge.running.state() == Operating::Running;
-    let newest = judge
-        .latest
-        .iter()
-        .flatten()
-        .max_by_key(|reading| reading.end);
     let losses = judge.losses.iter().map(|(reason, count)| Loss {
         reason: reason.clone(),
         count: *count,
@@ -57,13 +51,15 @@ pub(super) fn status(judge: &AssetJudge, context: Context<'_>) -> Status {
         last_n: judge.n,
         open_count: u32::try_from(open.len()).unwrap_or(u32::MAX),
         open,
-        running: running(judge, newest.map(|reading| reading.speed)),
+        running: running(judge, speed(judge, context)),
         last_running: if runs {
             None
         } else {
             last_running(judge, context)
         },
-        judged_share_24h: judge.share.share(spec.points.len()),
+        judged_share_24h: judge
+            .share
+            .share(spec.points.len(), arrival.as_signal_time()),
         points: (0..spec.points.len())
             .map(|point| point_status(judge, context, point))
             .collect(),
@@ -79,7 +75,7 @@ pub(super) fn status(judge: &AssetJudge, context: Context<'_>) -> Status {
 fn open(judge: &AssetJudge, context: Context<'_>) -> Vec<Open> {
     let state = match judge.judging {
         Judging::On => State::Unack,
-        Judging::Suspended | Judging::Resuming(_) => State::Dsupr,
+        Judging::Suspended | Judging::Resuming { .. } => State::Dsupr,
     };
     let machine = judge
         .watches
@@ -116,7 +112,7 @@ fn open(judge: &AssetJudge, context: Context<'_>) -> Vec<Open> {
 
 fn is_stale(judge: &AssetJudge, context: Context<'_>, reading: &Reading) -> bool {
     let length = reading.length().times(STALE_READINGS);
-    !judge.link_up || context.arrival.since(Arrival::from_ns(reading.closed.ns())) > length
+    !judge.link_up || context.arrival.since(reading.closed) >= length
 }
 
 fn quality(judge: &AssetJudge, context: Context<'_>, point: usize) -> Quality {
@@ -210,14 +206,30 @@ fn last_running(judge: &AssetJudge, context: Context<'_>) -> Option<LastRunning>
     })
 }
 
-/// Watches whose point has had no fresh reading.
+/// Watches whose answer is old: their point has had no reading they could be judged on.
+///
+/// A machine that stands still gives no answers; then any reading will do, the status says that it stands.
 fn stale(judge: &AssetJudge, context: Context<'_>) -> Vec<String> {
+    let answers = match judge.running.state() {
+        Operating::Stopped => &judge.latest,
+        Operating::Unknown | Operating::Running => &judge.last_running,
+    };
     let watches = context.plan.spec().watches.iter();
     watches
         .filter(|watch| {
-            let latest = judge.latest[watch.spec().point].as_ref();
-            latest.is_none_or(|reading| is_stale(judge, context, reading))
+            let answer = answers[watch.spec().point].as_ref();
+            answer.is_none_or(|reading| is_stale(judge, context, reading))
         })
         .map(|watch| watch.full_name().into())
         .collect()
+}
+
+/// The speed now: the one reported last while it is fresh, else the nominal one of a machine that runs.
+fn speed(judge: &AssetJudge, context: Context<'_>) -> Option<ShaftSpeed> {
+    let spec = context.plan.spec();
+    let now = context.arrival.as_signal_time();
+    let runs = judge.running.state() == Operating::Running;
+    let nominal = runs.then_some(ShaftSpeed::Nominal(spec.speed.nominal));
+    let latest = judge.speeds.latest(now, spec.running.speed_valid);
+    latest.map(ShaftSpeed::Reported).or(nominal)
 }

@@ -15,9 +15,13 @@ use crate::{
 const RESUME_READINGS: u8 = 2;
 
 impl AssetJudge {
+    /// Tells from the level whether the machine runs, where no fresh speed does.
+    ///
+    /// The asset's strongest velocity counts: this reading's and that of every other point of about the same time.
     pub(super) fn level(
         &mut self,
         context: Context<'_>,
+        point: usize,
         reading: &Reading,
         actions: &mut Vec<Action>,
     ) {
@@ -25,16 +29,18 @@ impl AssetJudge {
         let Some((velocity, _)) = reading.velocity else {
             return;
         };
-        let believable = reading.doubts.is_empty() || reading.doubts.has(Doubt::SpeedMoving);
-        if !believable || self.speeds.fresh(reading.end, rule.speed_valid).is_some() {
+        let believable = |reading: &Reading| !reading.doubts.iter().any(Doubt::is_instrument);
+        if !believable(reading) || self.speeds.fresh(reading.end, rule.speed_valid).is_some() {
             return;
         }
         let recent = reading.end.minus(reading.length());
         let others = self
             .latest
             .iter()
-            .flatten()
-            .filter(|other| other.end >= recent);
+            .enumerate()
+            .filter(|(other, _)| *other != point)
+            .filter_map(|(_, latest)| latest.as_ref())
+            .filter(|other| other.end >= recent && believable(other));
         let strongest = others
             .filter_map(|other| other.value(Measure::VelocityRms))
             .fold(velocity, f64::max);
@@ -47,7 +53,7 @@ impl AssetJudge {
         self.changed = true;
         let runs = self.running.state() == Operating::Running;
         match self.judging {
-            Judging::On | Judging::Resuming(_) if !runs => {
+            Judging::On | Judging::Resuming { .. } if !runs => {
                 let told = self.judging != Judging::On;
                 self.judging = Judging::Suspended;
                 if !told && self.any_open() {
@@ -56,29 +62,41 @@ impl AssetJudge {
             }
             Judging::Suspended if runs => {
                 self.judging = if self.any_open() {
-                    Judging::Resuming(RESUME_READINGS)
+                    Judging::Resuming {
+                        left: RESUME_READINGS,
+                        until: None,
+                    }
                 } else {
                     Judging::On
                 };
             }
-            Judging::On | Judging::Resuming(_) | Judging::Suspended => {}
+            Judging::On | Judging::Resuming { .. } | Judging::Suspended => {}
         }
     }
 
     /// Counts a judged reading towards going on after a stop; `true` when watches are judged.
+    ///
+    /// Readings of several points that end together are one.
     pub(super) fn judging_goes_on(
         &mut self,
         context: Context<'_>,
+        reading: &Reading,
         actions: &mut Vec<Action>,
     ) -> bool {
         match self.judging {
             Judging::On => true,
             Judging::Suspended => false,
-            Judging::Resuming(left) if left > 1 => {
-                self.judging = Judging::Resuming(left - 1);
+            Judging::Resuming { until, .. } if until.is_some_and(|until| reading.end <= until) => {
                 false
             }
-            Judging::Resuming(_) => {
+            Judging::Resuming { left, .. } if left > 1 => {
+                self.judging = Judging::Resuming {
+                    left: left - 1,
+                    until: Some(reading.end),
+                };
+                false
+            }
+            Judging::Resuming { .. } => {
                 self.judging = Judging::On;
                 self.asset_event(context, message::AssetChange::Resumed, actions);
                 true
@@ -86,6 +104,7 @@ impl AssetJudge {
         }
     }
 
+    /// Whether a machine watch has an open occurrence.
     pub(super) fn any_open(&self) -> bool {
         self.watches
             .iter()

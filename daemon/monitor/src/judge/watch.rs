@@ -32,6 +32,8 @@ pub(super) struct Occurrence {
     pub(super) id: Option<Id>,
     /// When the condition began.
     pub(super) since: SignalTime,
+    /// The last value before the condition began, in the measure's unit; `None` when it held from the first reading on.
+    pub(super) before: Option<f64>,
     /// High-band acceleration when it was raised, m/s2 rms: what must not have risen for a bearing to be back.
     high_band_at_raise: Option<f64>,
 }
@@ -41,6 +43,7 @@ pub(super) struct Occurrence {
 pub(super) struct WatchState {
     severity: Severity,
     occurrence: Option<Occurrence>,
+    quiet: Option<f64>,
     alert: Counter,
     danger: Counter,
     ease: Counter,
@@ -56,6 +59,7 @@ impl Default for WatchState {
         Self {
             severity: Severity::None,
             occurrence: None,
+            quiet: None,
             alert: Counter::default(),
             danger: Counter::default(),
             ease: Counter::default(),
@@ -82,6 +86,14 @@ impl WatchState {
         }
     }
 
+    /// Forgets how far each persistence has come; what stands open stays.
+    pub(super) fn restart_timers(&mut self) {
+        self.alert.reset();
+        self.danger.reset();
+        self.ease.reset();
+        self.clear.reset();
+    }
+
     /// Closes whatever is open, because its watch or asset is no longer there.
     pub(super) fn withdraw(&mut self) -> Option<Occurrence> {
         let open = self.occurrence.take();
@@ -89,13 +101,13 @@ impl WatchState {
         open
     }
 
-    /// Readings in a row on which the condition behind the current severity has been met.
+    /// Readings on which the condition behind a change has held.
     pub(super) const fn readings(&self, change: Change) -> u32 {
         match change {
-            Change::Raised(Severity::Danger) | Change::Worsened => self.danger.in_row(),
-            Change::Raised(_) => self.alert.in_row(),
-            Change::Eased => self.ease.in_row(),
-            Change::Cleared => self.clear.in_row(),
+            Change::Raised(Severity::Danger) | Change::Worsened => self.danger.held(),
+            Change::Raised(_) => self.alert.held(),
+            Change::Eased => self.ease.held(),
+            Change::Cleared => self.clear.held(),
         }
     }
 
@@ -121,8 +133,12 @@ impl WatchState {
                 .then(|| self.rise(plan, reading, true, true))
                 .flatten();
         }
-        self.rise(plan, reading, over_alert, over_danger)
-            .or_else(|| self.fall(plan, reading, value, counts))
+        let risen = self.rise(plan, reading, over_alert, over_danger);
+        let nothing_pending = self.alert.since().is_none() && self.danger.since().is_none();
+        if nothing_pending {
+            self.quiet = Some(value);
+        }
+        risen.or_else(|| self.fall(plan, reading, value, counts))
     }
 
     /// Whether the value carries weight: a bearing line below its least strength does not.
@@ -167,6 +183,7 @@ impl WatchState {
             self.occurrence = Some(Occurrence {
                 id: None,
                 since: self.alert.since().or(since).unwrap_or(reading.start),
+                before: self.quiet,
                 high_band_at_raise: reading.high_band_rms,
             });
         }
@@ -189,7 +206,9 @@ impl WatchState {
                 && self.high_band_back(spec.measure, reading)
         };
         let lowest = spec.limits.alert().or(spec.limits.danger());
-        let (back_from_danger, back_from_all) = (back(spec.limits.danger()), back(lowest));
+        // A danger whose limit was taken out of the plan is none any more.
+        let back_from_danger = spec.limits.danger().is_none() || back(spec.limits.danger());
+        let back_from_all = back(lowest);
         let eased = self.ease.feed(back_from_danger, reading, spec.clear_after);
         let cleared = self.clear.feed(back_from_all, reading, spec.clear_after);
         if cleared {
@@ -204,6 +223,11 @@ impl WatchState {
         } else {
             None
         }
+    }
+
+    /// When the value came back below what the open occurrence stands for; `None` while it is not.
+    pub(super) const fn back_since(&self) -> Option<SignalTime> {
+        self.clear.since()
     }
 
     /// Takes out the occurrence a [`Change::Cleared`] has closed.
@@ -225,7 +249,8 @@ impl WatchState {
             reading.high_band_rms,
         ) {
             (Some(at_raise), Some(now)) => now <= HIGH_BAND_BACK * at_raise,
-            _ => true,
+            (Some(_), None) => false,
+            (None, _) => true,
         }
     }
 }
