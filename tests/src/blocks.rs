@@ -1,8 +1,14 @@
 //! Made-up signals: a steady sine, as blocks on the usual topic of one point.
 
-use std::time::{SystemTime, UNIX_EPOCH};
+use std::sync::Arc;
+use std::sync::atomic::{AtomicBool, AtomicU64, Ordering};
+use std::thread::{self, JoinHandle};
+use std::time::{Duration, SystemTime, UNIX_EPOCH};
 
 use humward_wire::block::{Block, SampleEncoding, Unit, encode_cbor};
+use rumqttc::QoS;
+
+use crate::listener::Listener;
 
 /// Sample rate, Hz.
 pub const RATE_HZ: f64 = 8192.0;
@@ -44,4 +50,55 @@ pub fn sine(at: i64, mm_s: f64) -> Vec<u8> {
         ..Block::empty()
     };
     encode_cbor(&block, SampleEncoding::F32)
+}
+
+/// A stream of blocks of one sine, one every quarter second, until dropped, also by a test that fails.
+#[derive(Debug)]
+pub struct Stream {
+    stop: Arc<AtomicBool>,
+    mm_s: Arc<AtomicU64>,
+    thread: Option<JoinHandle<()>>,
+}
+
+impl Stream {
+    /// Begins now, on `topic`.
+    pub fn start(listener: &Listener, topic: &str, mm_s: f64) -> Self {
+        let stop = Arc::new(AtomicBool::new(false));
+        let (publisher, topic) = (listener.publisher(), topic.to_owned());
+        let level = Arc::new(AtomicU64::new(mm_s.to_bits()));
+        let (stopped, mm_s) = (Arc::clone(&stop), Arc::clone(&level));
+        let thread = thread::spawn(move || {
+            let mut at = quarter_ns() - BLOCK_NS;
+            while !stopped.load(Ordering::Relaxed) {
+                // A full queue is a broker that is away: the block is lost, as a sensor would lose it.
+                drop(publisher.try_publish(
+                    &topic,
+                    QoS::AtLeastOnce,
+                    false,
+                    sine(at, f64::from_bits(mm_s.load(Ordering::Relaxed))),
+                ));
+                at += BLOCK_NS;
+                thread::sleep(Duration::from_millis(250));
+            }
+        });
+        Self {
+            stop,
+            mm_s: level,
+            thread: Some(thread),
+        }
+    }
+
+    /// From the next block on the sine has this velocity, mm/s rms.
+    pub fn set(&self, mm_s: f64) {
+        self.mm_s.store(mm_s.to_bits(), Ordering::Relaxed);
+    }
+}
+
+impl Drop for Stream {
+    fn drop(&mut self) {
+        self.stop.store(true, Ordering::Relaxed);
+        if let Some(thread) = self.thread.take() {
+            drop(thread.join());
+        }
+    }
 }

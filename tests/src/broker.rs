@@ -21,9 +21,19 @@ impl Broker {
         Self::with("")
     }
 
-    /// Starts one with further lines in its configuration.
+    /// Starts one with further lines in its configuration; when its port was taken meanwhile, on another.
     pub fn with(lines: &str) -> Self {
-        Self::on(Self::free_port(), lines)
+        let mut broker = Self::prepare(Self::free_port(), lines);
+        for _ in 0..5 {
+            match broker.launch() {
+                Ok(()) => return broker,
+                Err(log) if log.contains("Address already in use") => {
+                    broker = Self::prepare(Self::free_port(), lines);
+                }
+                Err(log) => panic!("mosquitto ended: {log}"),
+            }
+        }
+        panic!("no port of 127.0.0.1 stays free");
     }
 
     /// A port nobody listens on; it may be taken before it is used, and then the broker does not come up.
@@ -36,19 +46,23 @@ impl Broker {
 
     /// Starts one on this port with further lines in its configuration.
     pub fn on(port: u16, lines: &str) -> Self {
+        let mut broker = Self::prepare(port, lines);
+        broker.restart();
+        broker
+    }
+
+    fn prepare(port: u16, lines: &str) -> Self {
         let folder = folder("broker");
         let text = format!(
             "allow_anonymous true\nset_tcp_nodelay true\npersistence false\nmax_inflight_messages 0\n\
              max_queued_messages 100000\nlog_dest stderr\nlistener {port} 127.0.0.1\n{lines}"
         );
         fs::write(folder.join("mosquitto.conf"), text).expect("the folder takes a file");
-        let mut broker = Self {
+        Self {
             folder,
             port,
             child: None,
-        };
-        broker.restart();
-        broker
+        }
     }
 
     /// Its port.
@@ -59,10 +73,18 @@ impl Broker {
     /// Starts it again on its port, with nothing remembered.
     pub fn restart(&mut self) {
         self.stop();
+        if let Err(log) = self.launch() {
+            panic!("mosquitto ended: {log}");
+        }
+    }
+
+    /// Starts the program and waits until it listens; its log when it ended instead.
+    fn launch(&mut self) -> Result<(), String> {
+        let path = self.folder.join("log");
         let log = File::options()
             .create(true)
             .append(true)
-            .open(self.folder.join("log"))
+            .open(&path)
             .expect("the folder takes a log");
         let child = Command::new(program())
             .arg("-c")
@@ -71,11 +93,14 @@ impl Broker {
             .stderr(log)
             .spawn()
             .expect("mosquitto starts; on Debian: apt-get install mosquitto");
-        self.child = Some(child);
+        let child = self.child.insert(child);
         let address = ("127.0.0.1", self.port);
         wait("mosquitto to listen", SOON, || {
-            TcpStream::connect(address).ok()
-        });
+            match child.try_wait().expect("our own child can be asked") {
+                Some(_) => Some(Err(fs::read_to_string(&path).unwrap_or_default())),
+                None => TcpStream::connect(address).ok().map(|_| Ok(())),
+            }
+        })
     }
 
     /// Ends it at once, as a crash would.

@@ -88,6 +88,11 @@ impl Listener {
         listener
     }
 
+    /// Who publishes for us, for a thread of its own.
+    pub fn publisher(&self) -> Client {
+        self.client.clone()
+    }
+
     /// Publishes at QoS 1.
     pub fn publish(&self, topic: &str, retain: bool, payload: impl Into<Vec<u8>>) {
         self.client
