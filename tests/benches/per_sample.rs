@@ -34,7 +34,7 @@ use realfft::RealFftPlanner;
 
 type Failure = Box<dyn Error>;
 /// One row's work: all blocks once.
-type Work<'a> = Work<'a>;
+type Work<'a> = Box<dyn FnMut() -> Result<(), Failure> + 'a>;
 
 const RATE_HZ: f64 = 25_600.0;
 const FRAME: usize = 8192;
