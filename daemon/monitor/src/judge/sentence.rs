@@ -76,10 +76,16 @@ fn short(name: &str) -> String {
 }
 
 /// Joins parts with spaces and ends with the standing words; parts that no longer fit are left out from the end.
+///
+/// The first part, which says what it is about, is cut rather than left out.
 pub(super) fn join(parts: &[String]) -> String {
     let mut sentence = String::new();
     for part in parts.iter().filter(|part| !part.is_empty()) {
         if !fits(&sentence, part) {
+            if sentence.is_empty() {
+                sentence.extend(part.chars().take(MAX_TEXT - LAST_WORDS.len() - 2));
+                sentence.push_str("\u{2026} ");
+            }
             break;
         }
         sentence.push_str(part);
@@ -141,7 +147,13 @@ mod tests {
     #[test]
     fn a_long_part_is_left_out_and_the_last_words_stay() {
         let long = "x".repeat(290);
-        assert_eq!(join(&["Short.".to_string(), long]), "Short. Advisory only.");
+        assert_eq!(
+            join(&["Short.".to_string(), long.clone()]),
+            "Short. Advisory only."
+        );
+        let cut = join(&[long, "Short.".to_string()]);
+        assert_eq!(cut.chars().count(), MAX_TEXT);
+        assert!(cut.starts_with("xxx") && cut.ends_with("x\u{2026} Advisory only."));
     }
 
     #[test]

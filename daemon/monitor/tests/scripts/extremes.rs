@@ -115,7 +115,7 @@ fn settings(which: u8) -> Settings {
         reading,
         "speed_valid 30",
         asset.as_str(),
-        "point de \"drive end\" range 15 bearing 3.6 5.4 4.7 0.4 envelope 800 2400",
+        "point de \"the drive end bearing housing, horizontal, seen from the coupling side of it\" range 15 bearing 3.6 5.4 4.7 0.4 envelope 800 2400",
         "point nde \"non-drive end\" source de channel 1 count_per_g 100 band_orders 0.5 1.5",
         velocity.as_str(),
         "watch outer of outer alert 10 alert_after \"1 reading\"",
@@ -193,7 +193,8 @@ proptest! {
                     Action::Event(event) => {
                         prop_assert!(event.to_json().len() <= MAX_EVENT);
                         let text = &event.finding.text;
-                        prop_assert!(text.chars().count() <= 300 && text.ends_with("Advisory only."), "{}", text);
+                        prop_assert!(text.chars().count() <= 300, "{}", text);
+                        prop_assert!(text.contains(" P-") && text.ends_with("Advisory only."), "{}", text);
                     }
                     Action::Status(status) => prop_assert!(status.to_json().len() <= MAX_STATUS),
                     Action::Alarm { open: Some(alarm), .. } => prop_assert!(alarm.to_json().len() <= MAX_EVENT),
