@@ -217,6 +217,7 @@ fn plan() -> Result<Arc<GroupPlan>, Failure> {
             from_mm_s: 0.2,
             speed_valid: Span::from_secs(86_400),
         },
+        run_signal: None,
         zones: None,
         reading_every: Span::from_secs(10),
         status_every: Span::from_secs(300),

@@ -163,6 +163,9 @@ mod tests {
 
     use super::{MINUTE_NS, Player, as_block};
 
+    /// 2025-12-01T00:00:00Z in ns: a whole minute in years a sensor may name.
+    const BEGAN: i64 = 29_409_120 * MINUTE_NS;
+
     #[test]
     fn a_looped_recording_goes_on_without_a_seam() {
         let site = Id::new("harbour").expect("a test id");
@@ -177,7 +180,7 @@ mod tests {
             let at = i * 250_000_000;
             let samples = vec![0.5; 1024];
             let block = Block {
-                at: Some(MINUTE_NS + at),
+                at: Some(BEGAN + at),
                 seq: Some(i as u64),
                 rate_hz: 4096.0,
                 unit: Unit::G,
@@ -186,7 +189,7 @@ mod tests {
             };
             let payload = encode_cbor(&block, SampleEncoding::F32);
             bytes.extend(record(&Record::Message {
-                arrival: MINUTE_NS + at + 250_000_000,
+                arrival: BEGAN + at + 250_000_000,
                 topic: "humward/v1/harbour/block/P-1/de",
                 payload: &payload,
             }));
@@ -198,11 +201,14 @@ mod tests {
             .collect();
         assert_eq!(blocks.len(), 7);
         for (i, block) in blocks.iter().enumerate() {
-            assert_eq!(block.at, Some(6 * MINUTE_NS + i as i64 * 250_000_000));
+            assert_eq!(
+                block.at,
+                Some(BEGAN + 5 * MINUTE_NS + i as i64 * 250_000_000)
+            );
             assert_eq!(block.seq, Some(i as u64));
             assert_eq!(
                 messages[i].arrival,
-                6 * MINUTE_NS + (i as i64 + 1) * 250_000_000
+                BEGAN + 5 * MINUTE_NS + (i as i64 + 1) * 250_000_000
             );
         }
     }

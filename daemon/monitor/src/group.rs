@@ -108,8 +108,14 @@ impl Group {
                     asset.judge.speed(context, at, speed.rpm, actions)
                 });
             }
-            // Operating states by process values are told apart from here on; nothing is judged by them yet.
-            Input::Process(asset, _) => self.with_asset(asset, arrival, |_, _| ()),
+            Input::Process(asset, process) => {
+                let at = process
+                    .at
+                    .map_or(arrival.as_signal_time(), SignalTime::from_ns);
+                self.with_asset(asset, arrival, |asset, context| {
+                    asset.judge.process(context, at, process, actions);
+                });
+            }
             Input::Command(asset, sender, command) => {
                 self.command(arrival, asset, sender, command, actions)
             }

@@ -22,7 +22,7 @@ mod words;
 
 use alloc::{collections::BTreeMap, string::String, vec::Vec};
 
-use humward_wire::refusal::Refusal;
+use humward_wire::{process::Process, refusal::Refusal};
 
 pub use running::{Operating, SpeedTrack};
 
@@ -67,6 +67,8 @@ enum Judging {
 pub struct AssetJudge {
     n: u64,
     speeds: SpeedTrack,
+    /// Values of the run signal, kept as speeds are.
+    run_signals: SpeedTrack,
     running: RunningState,
     judging: Judging,
     watches: Vec<WatchState>,
@@ -88,6 +90,7 @@ impl AssetJudge {
         Self {
             n: 0,
             speeds: SpeedTrack::default(),
+            run_signals: SpeedTrack::default(),
             running: RunningState::default(),
             judging: Judging::On,
             watches: alloc::vec![WatchState::default(); plan.spec().watches.len()],
@@ -121,12 +124,36 @@ impl AssetJudge {
         rpm: f64,
         actions: &mut Vec<Action>,
     ) {
-        // A late report of an earlier speed says nothing about now.
+        // A late report of an earlier speed says nothing about now, and a fresh run signal comes first.
         if self.speeds.report(at, rpm)
+            && !self.run_signal_fresh(context, at)
             && self.running.by_speed(&context.plan.spec().running, at, rpm)
         {
             self.running_changed(context, actions);
         }
+    }
+
+    /// A process value was reported; only the one that tells whether the machine runs is judged by.
+    pub fn process(
+        &mut self,
+        context: Context<'_>,
+        at: SignalTime,
+        process: &Process,
+        actions: &mut Vec<Action>,
+    ) {
+        let tells = context.plan.spec().run_signal.as_ref() == Some(&process.name);
+        if tells
+            && self.run_signals.report(at, process.value)
+            && self.running.by_signal(at, process.value)
+        {
+            self.running_changed(context, actions);
+        }
+    }
+
+    /// Whether a run signal not older than a speed may be says what the machine does at `at`.
+    fn run_signal_fresh(&self, context: Context<'_>, at: SignalTime) -> bool {
+        let valid = context.plan.spec().running.speed_valid;
+        self.run_signals.fresh(at, valid).is_some()
     }
 
     /// What became of a block of the point; the loss it counts under, if any.

@@ -13,8 +13,6 @@ pub enum Exit {
     Usage,
     /// A file could not be read or an output not written.
     ReadWrite,
-    /// The broker refused the account, the client id or a subscription.
-    BrokerRefused,
     /// A recording is damaged; what could be read before the damage was used and told.
     Recording,
     /// A part of the daemon ended that must not; the log says which.
@@ -23,12 +21,11 @@ pub enum Exit {
 
 impl Exit {
     /// Every exit, in the order of its number.
-    pub const ALL: [Self; 7] = [
+    pub const ALL: [Self; 6] = [
         Self::Fine,
         Self::Configuration,
         Self::Usage,
         Self::ReadWrite,
-        Self::BrokerRefused,
         Self::Recording,
         Self::Internal,
     ];
@@ -40,9 +37,8 @@ impl Exit {
             Self::Configuration => 1,
             Self::Usage => 2,
             Self::ReadWrite => 3,
-            Self::BrokerRefused => 4,
-            Self::Recording => 5,
-            Self::Internal => 6,
+            Self::Recording => 4,
+            Self::Internal => 5,
         }
     }
 
@@ -53,9 +49,6 @@ impl Exit {
             Self::Configuration => "the configuration has faults, told on standard error",
             Self::Usage => "the command line is not understood",
             Self::ReadWrite => "a file could not be read or an output not written",
-            Self::BrokerRefused => {
-                "the broker refused the account, the client id or a subscription"
-            }
             Self::Recording => "a recording is damaged",
             Self::Internal => "a part of the daemon ended that must not; the log says which",
         }

@@ -139,6 +139,18 @@ impl RunningState {
         )
     }
 
+    /// The run signal was reported; `true` when the state changed by it.
+    pub(super) fn by_signal(&mut self, at: SignalTime, value: f64) -> bool {
+        self.turn(
+            if value >= 0.5 {
+                Operating::Running
+            } else {
+                Operating::Stopped
+            },
+            at,
+        )
+    }
+
     /// A level was read and no fresh speed is known, mm/s rms; `true` when the state changed by it.
     pub(super) fn by_level(
         &mut self,

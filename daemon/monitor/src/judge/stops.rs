@@ -15,7 +15,7 @@ use crate::{
 const RESUME_READINGS: u8 = 2;
 
 impl AssetJudge {
-    /// Tells from the level whether the machine runs, where no fresh speed does.
+    /// Tells from the level whether the machine runs, where no fresh speed or run signal does.
     ///
     /// The asset's strongest velocity counts: this reading's and that of every other point of about the same time.
     pub(super) fn level(
@@ -30,7 +30,14 @@ impl AssetJudge {
             return;
         };
         let believable = |reading: &Reading| !reading.doubts.iter().any(Doubt::is_instrument);
-        if !believable(reading) || self.speeds.fresh(reading.end, rule.speed_valid).is_some() {
+        if !believable(reading) || self.run_signal_fresh(context, reading.end) {
+            return;
+        }
+        if let Some(rpm) = self.speeds.fresh(reading.end, rule.speed_valid) {
+            // It decided when it was reported, unless a run signal that has gone stale since stood before it.
+            if self.running.by_speed(rule, reading.end, rpm) {
+                self.running_changed(context, actions);
+            }
             return;
         }
         let recent = reading.end.minus(reading.length());

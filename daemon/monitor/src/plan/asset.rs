@@ -46,6 +46,8 @@ pub struct AssetSpec {
     pub speed: SpeedRange,
     /// How it is known that it runs.
     pub running: RunningRule,
+    /// The process value that tells whether it runs: 0.5 or more means running. It comes before speed and level.
+    pub run_signal: Option<Id>,
     /// The zones velocity is told in.
     pub zones: Option<ZoneLimits>,
     /// Length of a reading; readings end on its absolute multiples.

@@ -52,6 +52,7 @@ impl Default for Settings {
                     from_mm_s: 0.5,
                     speed_valid: Span::from_secs(3600),
                 },
+                run_signal: None,
                 zones: None,
                 reading_every: Span::from_secs(10),
                 status_every: Span::from_secs(3600),
@@ -101,6 +102,7 @@ impl Settings {
                 (common.running.from_rpm, common.running.from_mm_s) =
                     (words.number(1), words.number(2));
             }
+            "run_signal" => common.run_signal = Some(id(words.at(1))),
             "zones" => {
                 let borders = [1, 2, 3].map(|place| words.number(place));
                 common.zones =

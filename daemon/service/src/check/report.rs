@@ -108,6 +108,12 @@ fn write_asset(
         spec.running.speed_valid.secs(),
         spec.running.from_mm_s
     )?;
+    if let Some(signal) = &spec.run_signal {
+        writeln!(
+            out,
+            "  process value {signal} comes first: 0.5 or more means running"
+        )?;
+    }
     if let Some(zones) = &spec.zones {
         write_zone(zones, out)?;
     }

@@ -103,6 +103,7 @@ pub(crate) fn read<'t>(
         name: view.text("name").unwrap_or_else(|| made.id.to_string()),
         speed,
         running,
+        run_signal: view.id("run_signal"),
         zones: zones.clone(),
         reading_every,
         status_every,

@@ -67,10 +67,16 @@ pub(crate) static ASSET: KeyTable = KeyTable {
             about: "At this velocity and above it runs while no fresh speed is known.",
         },
         Key {
+            name: "run_signal",
+            kind: Kind::Id,
+            need: Need::Optional("none"),
+            about: "Name of the process value that tells whether it runs (0.5 or more, or true); it comes before speed and level.",
+        },
+        Key {
             name: "speed_valid",
             kind: Kind::Span(1, 2_592_000),
             need: Need::Default("\"2min\""),
-            about: "How long a reported speed stays fresh.",
+            about: "How long a reported speed or run signal stays fresh.",
         },
         Key {
             name: "speed_topic",
