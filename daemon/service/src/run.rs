@@ -254,7 +254,7 @@ fn say_what_is_watched(config: &Loaded, workers: usize) {
     let points: usize = assets.iter().map(|asset| asset.spec().points.len()).sum();
     let watches: usize = assets.iter().map(|asset| asset.spec().watches.len()).sum();
     tracing::info!(
-        "site {}, gateway {}: watching {} assets, {points} points, {watches} watches with {workers} workers; configuration {}",
+        "site {}, gateway {}: watching; assets {}, points {points}, watches {watches}, workers {workers}, configuration {}",
         config.site(),
         config.gateway().id(),
         assets.len(),

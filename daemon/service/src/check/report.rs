@@ -26,7 +26,7 @@ pub(super) fn write(loaded: &Loaded, out: &mut dyn Write) -> io::Result<()> {
         .sum();
     writeln!(
         out,
-        "site {}, gateway {}: {assets} assets in {} groups, configuration {}",
+        "site {}, gateway {}: assets {assets}, groups {}, configuration {}",
         loaded.site(),
         gateway.id(),
         loaded.groups().len(),
