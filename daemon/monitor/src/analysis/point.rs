@@ -23,6 +23,8 @@ use crate::{
 const LAST_NS: i64 = 7_258_118_400_000_000_000;
 /// No accelerometer samples faster: beyond it a rate is a mistake.
 const HIGHEST_RATE_HZ: f64 = 1e6;
+/// Share of a sample's length by which it may lie before a reading's border and yet be on it.
+const ON_BORDER: f64 = 1e-3;
 /// Least time the last blocks of a reading are waited for.
 const GRACE: Span = Span::from_secs(2);
 
@@ -126,14 +128,15 @@ impl PointAnalysis {
             },
         };
         while done < count {
-            let now = at.plus(Span::from_secs_f64(done as f64 / block.rate_hz));
+            // Times are whole nanoseconds: a sample within a thousandth of the border before it is on it.
+            let now = at.plus(Span::from_secs_f64(
+                (done as f64 + ON_BORDER) / block.rate_hz,
+            ));
             if let Some(reading) = self.close_if_past(now, point, arrival, speeds) {
                 return Progress::Closed(Box::new(reading));
             }
             let end = self.open_at(now, point, format, block.samples[done * channels + channel]);
-            // Times are whole nanoseconds: a sample that lies within a thousandth of the border is on it.
-            let left = end.since(now).secs() * block.rate_hz;
-            let until_end = (left - 1e-3).ceil().max(1.0) as usize;
+            let until_end = (end.since(now).secs() * block.rate_hz).ceil().max(1.0) as usize;
             let take = until_end.min(count - done);
             let samples = Channel {
                 samples: &block.samples[done * channels..(done + take) * channels],
@@ -182,7 +185,8 @@ impl PointAnalysis {
         }
         let length = Span::from_secs_f64(count as f64 / block.rate_hz);
         let mut closed = None;
-        match self.continuity.join(at, length, block.seq, arrival) {
+        let joint = self.continuity.join(at, length, block.seq, arrival);
+        match joint {
             Joint::Late => return Err(Taken::Late),
             Joint::First | Joint::Follows => {}
             Joint::AfterGap(_) => self.break_run(),
@@ -191,6 +195,7 @@ impl PointAnalysis {
         let mut skip = 0;
         if let Some(last_end) = self.last_end
             && at < last_end
+            && joint != Joint::Follows
         {
             skip = ((last_end.since(at).secs() * block.rate_hz).ceil() as usize).min(count);
             self.break_run();

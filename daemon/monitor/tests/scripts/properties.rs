@@ -10,7 +10,10 @@ use humward_monitor::{
     time::{Arrival, SignalTime, Span},
 };
 use humward_signal::frame::Scratch;
-use humward_wire::out::{Event, Severity, State};
+use humward_wire::{
+    block::{Block, Unit},
+    out::{Event, Severity, State},
+};
 use proptest::prelude::*;
 
 use crate::{
@@ -187,6 +190,60 @@ proptest! {
             for (x, y) in values(a).into_iter().zip(values(b)) {
                 prop_assert!((x - y).abs() <= 1e-6 * x.abs(), "{} and {}", x, y);
             }
+        }
+    }
+}
+
+/// Readings of a second of `blocks` blocks of `length` samples; each block's time is cut to whole ns and is `early` ns early.
+fn seconds(
+    rate_hz: f64,
+    length: usize,
+    blocks: usize,
+    start_ns: i64,
+    early: &[i64],
+) -> Vec<Reading> {
+    let plan = settings().plan();
+    let point = plan.assets()[0].spec().points[0].spec().clone();
+    let mut analysis = PointAnalysis::new(Span::from_secs(1), 1000.0);
+    let (mut scratch, mut closed) = (Scratch::new(), Vec::new());
+    for k in 0..blocks {
+        let block = Block {
+            samples: (0..length).map(|i| ((i * 7919) % 101) as f32).collect(),
+            rate_hz,
+            unit: Unit::MetrePerSecondSquared,
+            ..Block::empty()
+        };
+        let at = (k * length) as f64 / rate_hz * 1e9;
+        let at = ZERO_NS + start_ns + at as i64 - early[k % early.len()];
+        let arriving = Arriving {
+            block: &block,
+            at: SignalTime::from_ns(at),
+            arrival: Arrival::from_ns(at),
+            speeds: &Steady,
+        };
+        analysis.push(&point, arriving, &mut scratch, &mut closed);
+    }
+    closed
+}
+
+proptest! {
+    #![proptest_config(config(48))]
+
+    /// Stamps are whole nanoseconds and sensors round them as they like: a border is crossed once all the same.
+    #[test]
+    fn every_second_gives_one_reading_wherever_its_samples_fall(
+        rate_hz in prop_oneof![Just(2560.0), Just(12_000.0), Just(44_100.0), Just(48_000.0), 2560.0..50_000.0f64],
+        length in 500usize..9000,
+        start_ns in 0i64..1_000_000_000,
+        early in prop::collection::vec(0i64..30, 1..5),
+    ) {
+        let blocks = (6.0 * rate_hz / length as f64).ceil() as usize;
+        let readings = seconds(rate_hz, length, blocks, start_ns, &early);
+        prop_assert!(readings.len() >= 5, "{} readings", readings.len());
+        for (k, reading) in readings.iter().enumerate() {
+            prop_assert_eq!(reading.end.ns(), ZERO_NS + (k as i64 + 1) * 1_000_000_000);
+            let (came, whole) = reading.samples;
+            prop_assert!(k == 0 || came.abs_diff(whole) <= 1, "{came} of {whole}");
         }
     }
 }
