@@ -129,9 +129,11 @@ impl PointAnalysis {
         };
         while done < count {
             // Times are whole nanoseconds: a sample within a thousandth of the border before it is on it.
-            let now = at.plus(Span::from_secs_f64(
+            let told = at.plus(Span::from_secs_f64(
                 (done as f64 + ON_BORDER) / block.rate_hz,
             ));
+            // A block that follows may tell a time before the border its run has reached: that is jitter.
+            let now = self.last_end.map_or(told, |end| told.max(end));
             if let Some(reading) = self.close_if_past(now, point, arrival, speeds) {
                 return Progress::Closed(Box::new(reading));
             }
@@ -455,3 +457,6 @@ impl PointAnalysis {
         Some(reading)
     }
 }
+
+#[cfg(test)]
+mod tests;
