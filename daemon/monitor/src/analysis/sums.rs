@@ -127,6 +127,7 @@ impl Sums {
                 frequency_hz: order * shaft_hz,
                 tolerance: SLIP_TOLERANCE,
                 harmonics: HARMONICS,
+                shaft_hz: Some(shaft_hz),
             });
             let standing = family.count_above(STANDS_OUT_DB);
             Some(match family.fundamental() {

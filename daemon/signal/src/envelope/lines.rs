@@ -14,6 +14,9 @@ use alloc::vec::Vec;
 use super::EnvelopeSpectrum;
 use crate::peaks::{self, Peak};
 
+/// A line this near a whole multiple of the shaft is the shaft's, relative: the error of a speed told in whole
+/// r/min and of the line's place. Common practice, no source.
+const SHAFTS_OWN: f64 = 0.003;
 /// Half width left out of the floor about the line, relative.
 const FLOOR_NOTCH: f64 = 0.02;
 /// The same in bins: the main lobe of the Hann window.
@@ -30,6 +33,8 @@ pub struct LineSearch {
     pub tolerance: f64,
     /// Lines wanted, the fundamental among them.
     pub harmonics: usize,
+    /// Shaft frequency, Hz, whose whole multiples (vanes, looseness) are not taken for the fundamental.
+    pub shaft_hz: Option<f64>,
 }
 
 /// One line of a family.
@@ -72,21 +77,27 @@ impl EnvelopeSpectrum {
     /// Looks for a family of lines.
     ///
     /// The fundamental is the highest local peak within the tolerance, which the skirt of a stronger
-    /// line outside it is not; harmonics lie within ±1 bin or ±0.5 %, whichever is wider, of
+    /// line outside it is not, and no multiple of the shaft: a peak within 0.3 % of one, and nearer to it than
+    /// to the frequency expected, is passed over. Harmonics lie within ±1 bin or ±0.5 %, whichever is wider, of
     /// multiples of the frequency *found*. Without a fundamental nothing is found.
     pub fn search(&self, search: &LineSearch) -> LineFamily {
         let power = self.powers();
         let df = self.resolution_hz();
         let mut lines = Vec::with_capacity(search.harmonics);
         let nominal = search.frequency_hz / df;
-        let fundamental = line_near(&power, nominal, (search.tolerance * nominal).max(0.5));
+        let half_width = (search.tolerance * nominal).max(0.5);
+        let fundamental = line_near(&power, nominal, half_width, |bin| {
+            search
+                .shaft_hz
+                .is_none_or(|shaft_hz| !is_the_shafts(bin, nominal, shaft_hz / df))
+        });
         let found = fundamental.map(|peak| peak.bin);
         for h in 1..=search.harmonics {
             let peak = match (h, found) {
                 (1, _) => fundamental,
                 (_, Some(first)) => {
                     let bin = first * h as f64;
-                    line_near(&power, bin, (0.005 * bin).max(1.0))
+                    line_near(&power, bin, (0.005 * bin).max(1.0), |_| true)
                 }
                 (_, None) => None,
             };
@@ -124,12 +135,19 @@ fn floor(power: &[f64], bin: f64) -> Option<f64> {
     peaks::median(&mut around)
 }
 
-/// The highest local peak whose top lies within `half_width` bins of `bin`.
-fn line_near(power: &[f64], bin: f64, half_width: f64) -> Option<Peak> {
+/// Whether a peak at `bin` is a whole multiple of the shaft rather than the line expected at `nominal`.
+fn is_the_shafts(bin: f64, nominal: f64, shaft: f64) -> bool {
+    let multiple = (bin / shaft).round() * shaft;
+    let off = (bin - multiple).abs();
+    off <= SHAFTS_OWN * bin && off < (bin - nominal).abs()
+}
+
+/// The highest local peak whose top lies within `half_width` bins of `bin`, among those that `may` be it.
+fn line_near(power: &[f64], bin: f64, half_width: f64, may: impl Fn(f64) -> bool) -> Option<Peak> {
     let first = ((bin - half_width).floor().max(2.0)) as usize;
     let last = ((bin + half_width).ceil().max(0.0) as usize).min(power.len().saturating_sub(2));
     (first..=last)
         .filter_map(|k| peaks::at(power, k))
-        .filter(|peak| (peak.bin - bin).abs() <= half_width)
+        .filter(|peak| (peak.bin - bin).abs() <= half_width && may(peak.bin))
         .max_by(|a, b| a.power.total_cmp(&b.power))
 }

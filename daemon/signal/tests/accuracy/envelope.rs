@@ -31,6 +31,7 @@ fn search(frequency_hz: f64, harmonics: usize) -> LineSearch {
         frequency_hz,
         tolerance: 0.02,
         harmonics,
+        shaft_hz: None,
     }
 }
 
@@ -207,4 +208,34 @@ fn bands_that_cannot_work_are_refused() {
         "{}",
         plan.reach_hz()
     );
+}
+
+/// Orders of eight elements of 0.2656 on a pitch of 1.122: inner 4.9469, 1.1 % from the fifth multiple of the shaft.
+#[test]
+fn vanes_at_five_times_the_shaft_are_not_the_inner_race_and_the_race_beside_them_is_found() {
+    let (shaft_hz, order) = (29.95, 4.9469);
+    let search = LineSearch {
+        shaft_hz: Some(shaft_hz),
+        ..search(order * shaft_hz, 2)
+    };
+    // The label of the speed may be off by 0.25 %.
+    for vanes_hz in [5.0 * shaft_hz, 0.9975 * 5.0 * shaft_hz] {
+        let samples = sampled(25_600 * 8, RATE, bursts(10.0, 0.0004, vanes_hz));
+        let found = envelope_of(8192, RATE, BAND, &samples).search(&search);
+        assert!(found.count_above(20.0) == 0, "{vanes_hz} Hz: {found:?}");
+    }
+    for slip in [0.99, 1.0, 1.004] {
+        let race = bursts(10.0, 0.0004, slip * order * shaft_hz);
+        let samples = sampled(25_600 * 8, RATE, race);
+        let line = envelope_of(8192, RATE, BAND, &samples)
+            .search(&search)
+            .fundamental()
+            .unwrap();
+        close(
+            "race",
+            line.frequency_hz,
+            slip * order * shaft_hz,
+            0.02 * 3.125,
+        );
+    }
 }
