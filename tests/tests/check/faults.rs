@@ -84,6 +84,20 @@ fn six_different_faults_in_one_file_are_told_in_one_run() {
 }
 
 #[test]
+fn a_bad_id_hides_no_other_fault_of_its_asset_or_point() {
+    for (asset, point) in [("P 1", "de"), ("P-1", "d e"), ("P 1", "d e")] {
+        let toml = format!(
+            "site = \"a\"\n[[asset]]\nid = \"{asset}\"\nspeed = 1500\nzones = \"nope\"\n[[asset.point]]\n\
+             id = \"{point}\"\nframe = 8191\nbearing = {{ outer = 3.5 }}\n"
+        );
+        let said = Bench::new(&[("site.toml", &toml)]).check("site.toml", &[]);
+        for told in ["site.toml:5:", "site.toml:8:", "site.toml:9:"] {
+            assert!(said.err.contains(told), "{told}\n{}", said.err);
+        }
+    }
+}
+
+#[test]
 fn an_unknown_key_is_a_fault_with_the_nearest_known_one() {
     let said = check(
         "site = \"harbour\"\n[[asset]]\nid = \"P-1\"\nspeed = 1482\nreading_evry = \"1s\"\npoint = [{ id = \"de\" }]\n",

@@ -30,7 +30,7 @@ pub(crate) struct Made<'t> {
     pub(crate) notes: Vec<String>,
 }
 
-/// Reads an asset; `None` when not even its id is known.
+/// Reads an asset; `None` when its id is not known, once every other fault in it has been told.
 pub(crate) fn read<'t>(
     view: View<'t>,
     path: &str,
@@ -39,7 +39,8 @@ pub(crate) fn read<'t>(
     wide: &[Written<'t>],
     gather: &mut Gather<'_>,
 ) -> Option<Made<'t>> {
-    let id = view.id("id")?;
+    let known = view.id("id");
+    let id = known.clone().or_else(|| Id::new("unnamed").ok())?;
     let speed = speed(view, path, gather);
     let mut points = Vec::new();
     let mut written = written::of_asset(view, path, gather);
@@ -96,7 +97,7 @@ pub(crate) fn read<'t>(
     let (Some(speed), Some(running), (Some(reading_every), Some(status_every), Some(sensor_after))) =
         (speed, running, spans)
     else {
-        return Some(made);
+        return known.map(|_| made);
     };
     let spec = AssetSpec {
         id: made.id.clone(),
@@ -114,7 +115,7 @@ pub(crate) fn read<'t>(
     let (plan, notes) = plan(spec, watches, &made, site, gather);
     made.plan = plan;
     made.notes = notes;
-    Some(made)
+    known.map(|_| made)
 }
 
 fn speed(view: View<'_>, path: &str, gather: &mut Gather<'_>) -> Option<SpeedRange> {

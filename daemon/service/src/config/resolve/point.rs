@@ -36,7 +36,7 @@ pub(crate) struct PointMade<'t> {
     pub(crate) plan: Option<PointPlan>,
 }
 
-/// Reads a point; `None` when not even its id is known.
+/// Reads a point; `None` when its id is not known, once every other fault in it has been told.
 pub(crate) fn read<'t>(
     view: View<'t>,
     path: &str,
@@ -44,7 +44,8 @@ pub(crate) fn read<'t>(
     gather: &mut Gather<'_>,
 ) -> Option<PointMade<'t>> {
     let before = gather.faults.len();
-    let id = view.id("id")?;
+    let known = view.id("id");
+    let id = known.clone().or_else(|| Id::new("unnamed").ok())?;
     let source = view.id("source").unwrap_or_else(|| id.clone());
     let channel = u16::try_from(view.whole("channel").unwrap_or_default()).unwrap_or(u16::MAX);
     let rate_hz = view.number("rate_hz");
@@ -95,7 +96,7 @@ pub(crate) fn read<'t>(
         Ok(_) => {}
         Err(faults) => tell(view, path, faults, gather),
     }
-    Some(made)
+    known.map(|_| made)
 }
 
 /// Adds the faults of a plan made from a table, each at its key, but for keys whose value is told already.
