@@ -1,5 +1,10 @@
 //! What may depend on what, which lints stand, and how long a file may grow: held by a test from the first commit.
 
+#![expect(
+    clippy::unwrap_used,
+    reason = "the helpers of a test stop at its first surprise"
+)]
+
 use std::{
     collections::BTreeSet,
     fs,
