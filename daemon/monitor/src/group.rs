@@ -105,7 +105,12 @@ impl Group {
                     .at
                     .map_or(arrival.as_signal_time(), SignalTime::from_ns);
                 self.with_asset(asset, arrival, |asset, context| {
-                    asset.judge.speed(context, at, speed.rpm, actions)
+                    if speed.shaft.is_none() {
+                        asset.judge.speed(context, at, speed.rpm, actions);
+                    } else {
+                        // An asset has one shaft here: another's speed, or its 0, must not become its own.
+                        asset.judge.count("other_shaft", 1);
+                    }
                 });
             }
             Input::Process(asset, process) => {

@@ -62,7 +62,12 @@ const LONGEST_NAME: usize = 60;
 pub(super) fn place(word: &str, asset: &AssetPlan, point: Option<&PointSpec>) -> String {
     let spec = asset.spec();
     let point = point.map_or_else(String::new, |point| format!(", {}", short(&point.name)));
-    format!("{word} {} {}{point}", spec.id, short(&spec.name))
+    // Without a name of its own an asset is called by its tag, once.
+    if spec.name == spec.id.as_str() {
+        format!("{word} {}{point}", spec.id)
+    } else {
+        format!("{word} {} {}{point}", spec.id, short(&spec.name))
+    }
 }
 
 fn short(name: &str) -> String {

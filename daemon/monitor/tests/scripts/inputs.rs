@@ -2,7 +2,7 @@
 //!
 //! Streams: `FROM-TO vibrate V [hz F] [noise N] [bursts HZ PEAK] [clip C] [mean M]`, `flat`; with `to`, `lag`,
 //! `jitter`, `at_once T` (all arrive then), `later T V` (V mm/s from second T on), `shift` (the sensor's clock is off), `rate`, `block`, `unit`, `seq`, `unstamped`, `second V` (a second
-//! channel). Moments: `speed R`, `process NAME VALUE`, `link up|lost`, `gap shed N`, `refuse REASON`, `clock_step S`,
+//! channel). Moments: `speed R [shaft S]`, `process NAME VALUE`, `link up|lost`, `gap shed N`, `refuse REASON`, `clock_step S`,
 //! `command VERB ID`, `plan SETTING`, `restart`, `wait`, `wake` (a `wait` nobody
 //! attended), `end`. A moment given from-to repeats `every` so many seconds.
 
@@ -16,6 +16,7 @@ use humward_monitor::{
 use humward_wire::{
     block::{Block, Unit},
     command::{Command as Asked, Verb},
+    id::Id,
     process::Process,
     refusal::{Reason, Refusal},
     speed::Speed,
@@ -117,7 +118,7 @@ fn deed(settings: &mut Settings, words: &Words, moment: f64, to: f64) -> Deed {
                 Speed {
                     at,
                     rpm,
-                    shaft: None,
+                    shaft: words.option("shaft").map(|shaft| Id::new(shaft).unwrap()),
                 },
             )
         }
