@@ -211,9 +211,13 @@ pub async fn serve(
     let intake = tokio::spawn(intake.run(arrived, standing, intake_stopped));
     let publish = tokio::spawn(publish.run());
 
+    let tasks = [
+        ("the ingest connection", &ingest),
+        ("the publish connection", &publish),
+    ];
     let ended = tokio::select! {
         () = stop => None,
-        part = lost_part(&crew, &keeper) => Some(part),
+        part = lost_part(&crew, &keeper, &tasks, || intake.is_finished()) => Some(part),
     };
     stop_ingest.send_replace(true);
     let ingest_ended = ingest.await;
@@ -310,9 +314,20 @@ fn thread(
         })
 }
 
-/// Resolves when a thread has ended that never should.
-async fn lost_part(crew: &[JoinHandle<()>], keeper: &JoinHandle<()>) -> &'static str {
+/// Resolves when a thread or task has ended that never should.
+async fn lost_part(
+    crew: &[JoinHandle<()>],
+    keeper: &JoinHandle<()>,
+    tasks: &[(&'static str, &tokio::task::JoinHandle<()>)],
+    intake_ended: impl Fn() -> bool,
+) -> &'static str {
     loop {
+        if let Some((part, _)) = tasks.iter().find(|(_, task)| task.is_finished()) {
+            return part;
+        }
+        if intake_ended() {
+            return "the intake";
+        }
         if crew.iter().any(JoinHandle::is_finished) {
             return "a worker";
         }
