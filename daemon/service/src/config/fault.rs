@@ -24,9 +24,9 @@ pub struct Fault {
 
 impl fmt::Display for Fault {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        write!(f, "{}: ", self.place)?;
+        write!(f, "{}:", self.place)?;
         if !self.key.is_empty() {
-            write!(f, "{}", self.key)?;
+            write!(f, " {}", self.key)?;
         }
         write!(
             f,

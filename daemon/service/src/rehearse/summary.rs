@@ -113,7 +113,7 @@ impl Summary {
             )?;
         }
         for (reason, (count, first)) in &self.refusals {
-            writeln!(to, "  {count} payloads refused, {reason}; {first}")?;
+            writeln!(to, "  refused {count} x {reason}; {first}")?;
         }
         if self.events.is_empty() {
             writeln!(to, "  no event")?;

@@ -118,8 +118,8 @@ fn refused_payloads_and_unknown_topics_are_counted_and_the_first_of_each_is_name
     let (done, _, told) = rehearse("refused", &bytes, false);
     assert!(done.is_ok(), "{done:?}");
     for line in [
-        "2 payloads refused, unknown_encoding",
-        "1 payloads refused, far_from_arrival",
+        "refused 2 x unknown_encoding",
+        "refused 1 x far_from_arrival",
         "1 messages on topics not in the configuration, first humward/v1/harbour/block/P-1/nde",
     ] {
         assert!(told.contains(line), "{line:?} is not in:\n{told}");
