@@ -99,7 +99,7 @@ fn a_missing_file_an_empty_folder_and_bytes_that_are_no_text_are_faults() {
     let said = bench.check("nowhere.toml", &[]);
     assert_eq!(said.exit, Exit::Configuration);
     assert!(
-        said.err.starts_with("nowhere.toml: ") && said.err.contains("cfg-unreadable"),
+        said.err.starts_with("nowhere.toml:\n") && said.err.contains("cfg-unreadable"),
         "{}",
         said.err
     );
