@@ -8,7 +8,7 @@
 
 use humward_monitor::input::Input;
 use humward_monitor::time::{Arrival, Span};
-use humward_wire::block::{Block, Encoding, Limits, decode_into};
+use humward_wire::block::{Block, Encoding, Limits, at_offset, decode_into};
 use humward_wire::refusal::{Reason, Refusal};
 use humward_wire::{command, process, speed};
 
@@ -55,7 +55,8 @@ impl Decoder {
                     }
                 };
                 decode_into(&mut self.spare, payload, encoding, &self.limits)?;
-                self.within(self.spare.at, now, self.tolerance)?;
+                self.within(self.spare.at, now, self.tolerance)
+                    .map_err(|refusal| at_its_byte(refusal, payload, encoding))?;
                 Ok(Input::Block(
                     source.clone(),
                     std::mem::replace(&mut self.spare, Block::empty()),
@@ -63,12 +64,14 @@ impl Decoder {
             }
             About::Speed(asset) => {
                 let speed = speed::decode(payload)?;
-                self.within(speed.at, now, Span::from_ns(i64::MAX))?;
+                self.within(speed.at, now, Span::from_ns(i64::MAX))
+                    .map_err(|refusal| at_our_byte(refusal, payload))?;
                 Ok(Input::Speed(asset.clone(), speed))
             }
             About::Process(asset) => {
                 let process = process::decode(payload)?;
-                self.within(process.at, now, Span::from_ns(i64::MAX))?;
+                self.within(process.at, now, Span::from_ns(i64::MAX))
+                    .map_err(|refusal| at_our_byte(refusal, payload))?;
                 Ok(Input::Process(asset.clone(), process))
             }
             About::Command { asset, sender } => Ok(Input::Command(
@@ -97,6 +100,23 @@ impl Decoder {
             });
         }
         Ok(())
+    }
+}
+
+/// The refusal of a time, at the byte where the payload has it.
+fn at_its_byte(refusal: Refusal, payload: &[u8], encoding: &Encoding) -> Refusal {
+    Refusal {
+        offset: at_offset(payload, encoding),
+        ..refusal
+    }
+}
+
+/// The same for a message in our own keys.
+fn at_our_byte(refusal: Refusal, payload: &[u8]) -> Refusal {
+    match Encoding::detect(payload) {
+        Ok(encoding) => at_its_byte(refusal, payload, &encoding),
+        // A bare number has no time.
+        Err(_) => refusal,
     }
 }
 

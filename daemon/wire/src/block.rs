@@ -180,6 +180,21 @@ impl Block {
     }
 }
 
+/// Where the time of a payload that was read whole stands, for a refusal that only the receiver can make.
+///
+/// The byte of the value of `at`, in foreign JSON and without a time the payload's start.
+#[must_use]
+pub fn at_offset(payload: &[u8], encoding: &Encoding) -> usize {
+    match encoding {
+        Encoding::Cbor | Encoding::Json => field::read(payload, encoding.form(), &["at"])
+            .ok()
+            .and_then(|[at]| at)
+            .map_or(0, |at| at.at),
+        Encoding::Raw(layout) => layout.at.as_ref().map_or(0, |at| at.offset),
+        Encoding::JsonMapped(_) => 0,
+    }
+}
+
 /// Reads a block.
 ///
 /// # Errors

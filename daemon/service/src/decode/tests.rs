@@ -123,3 +123,20 @@ fn sample_memory_goes_round() {
         (memory, 4, "de")
     );
 }
+
+#[test]
+fn a_time_too_far_away_is_told_at_the_byte_where_it_stands() {
+    let mut decoder = Decoder::new(Span::from_secs(TOLERANCE));
+    let late = (NOW + (TOLERANCE + 1) * SECOND).to_string();
+    let json = format!("{{\"rate\": 2560, \"unit\": \"g\", \"at\": {late}, \"samples\": [1.0]}}");
+    let refusal = decoder
+        .decode(&about(), stamp(0), json.as_bytes())
+        .expect_err("too far away");
+    assert_eq!(Some(refusal.offset), json.find(&late));
+    let cbor = payload(NOW + (TOLERANCE + 1) * SECOND);
+    let refusal = decoder
+        .decode(&about(), stamp(0), &cbor)
+        .expect_err("too far away");
+    // A map head, then the text `at` with its head: the value stands at byte 4.
+    assert_eq!((refusal.offset, &cbor[2..4]), (4, &b"at"[..]));
+}
