@@ -100,13 +100,25 @@ fn assert_right(event: &Event, watch: &str) {
     );
 }
 
+/// The event `shift_ns` earlier; its sentence, which names the time of day, is left out.
+fn without_clock(json: &[u8], shift_ns: i64) -> Event {
+    let mut event = Event::from_json(json).expect("an event of ours");
+    event.header.at.0 -= shift_ns;
+    if let Some(since) = &mut event.finding.since {
+        since.0 -= shift_ns;
+    }
+    event.finding.text.clear();
+    event
+}
+
 fn live_and_rehearsed(recording: &std::path::Path, watch: Option<&str>) {
     let player = Player::new(&std::fs::read(recording).expect("a readable recording"));
     let broker = Broker::start();
     let listener = Listener::connect(broker.port(), "listener", "humward/#");
     let daemon = Daemon::start(&config(broker.port()));
     daemon.wait_for_log("subscribed to");
-    let messages = player.messages(player.shift_to_now(), SECONDS);
+    let shift_ns = player.shift_to_now();
+    let messages = player.messages(shift_ns, SECONDS);
     let shifted = folder("shifted").join("shifted.rec");
     std::fs::write(&shifted, player.recording(&messages)).expect("the folder takes a file");
     play(&listener, &messages);
@@ -163,6 +175,20 @@ fn live_and_rehearsed(recording: &std::path::Path, watch: Option<&str>) {
             .map(|event| String::from_utf8_lossy(event))
             .collect::<Vec<_>>(),
         "live and rehearsed"
+    );
+    let untouched = rehearse(&config(broker.port()), &[recording]);
+    let untouched = String::from_utf8(untouched.stdout).expect("events are text");
+    let untouched: Vec<Event> = untouched
+        .lines()
+        .map(|line| without_clock(line.as_bytes(), 0))
+        .collect();
+    let undone: Vec<Event> = live
+        .iter()
+        .map(|event| without_clock(event, shift_ns))
+        .collect();
+    assert_eq!(
+        undone, untouched,
+        "live with the shift undone, and the recording itself"
     );
     match watch {
         None => assert!(live.is_empty(), "healthy rings nothing"),
