@@ -89,17 +89,7 @@ pub(super) fn measured(
     reading: &Reading,
     quality: Quality,
 ) -> Measured {
-    let band = match spec.measure {
-        Measure::Band(index) => point.bands.get(usize::from(index)),
-        Measure::VelocityRms
-        | Measure::VelocityPeak
-        | Measure::AccelerationRms
-        | Measure::AccelerationPeak
-        | Measure::Crest
-        | Measure::Kurtosis
-        | Measure::HighBandRms
-        | Measure::Bearing(_) => None,
-    };
+    let band = spec.band(point);
     let measure = band.map_or_else(
         || words::key(spec.measure).into(),
         |band| format!("band.{}", band.spec().name),

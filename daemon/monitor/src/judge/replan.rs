@@ -5,7 +5,7 @@ use alloc::vec::Vec;
 use super::{AssetJudge, Context, Judging, Tally, message, sensor::SensorState, watch::WatchState};
 use crate::{
     action::Action,
-    plan::{AssetPlan, BandPlan, Measure, PointPlan, WatchPlan},
+    plan::{AssetPlan, BandPlan, PointPlan, WatchPlan},
     reading::Reading,
 };
 
@@ -134,20 +134,8 @@ fn is_same(old: &AssetPlan, before: &WatchPlan, new: &AssetPlan, now: &WatchPlan
 
 /// The band a watch is about, if it is about one.
 fn band<'a>(plan: &'a AssetPlan, watch: &WatchPlan) -> Option<&'a BandPlan> {
-    match watch.spec().measure {
-        Measure::Band(index) => {
-            let bands = &plan.spec().points[watch.spec().point].spec().bands;
-            bands.get(usize::from(index))
-        }
-        Measure::VelocityRms
-        | Measure::VelocityPeak
-        | Measure::AccelerationRms
-        | Measure::AccelerationPeak
-        | Measure::Crest
-        | Measure::Kurtosis
-        | Measure::HighBandRms
-        | Measure::Bearing(_) => None,
-    }
+    let point = &plan.spec().points[watch.spec().point];
+    watch.spec().band(point.spec())
 }
 
 /// Whether a reading means the same to both: limits, persistence and how the point reads.

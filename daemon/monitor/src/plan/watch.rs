@@ -5,7 +5,7 @@ use alloc::{format, string::String, vec::Vec};
 use humward_signal::bearing::BearingOrders;
 
 use super::{
-    Limits, Persistence,
+    BandPlan, Limits, Persistence, PointSpec,
     fault::{Code, Part, PlanFault},
 };
 
@@ -140,6 +140,23 @@ pub struct WatchSpec {
     pub clear_after: Persistence,
     /// Where the limits come from, such as the zone table's source; empty when the site set them.
     pub source: String,
+}
+
+impl WatchSpec {
+    /// The band it watches at its point; `None` when it watches another measure.
+    pub fn band<'a>(&self, point: &'a PointSpec) -> Option<&'a BandPlan> {
+        match self.measure {
+            Measure::Band(index) => point.bands.get(usize::from(index)),
+            Measure::VelocityRms
+            | Measure::VelocityPeak
+            | Measure::AccelerationRms
+            | Measure::AccelerationPeak
+            | Measure::Crest
+            | Measure::Kurtosis
+            | Measure::HighBandRms
+            | Measure::Bearing(_) => None,
+        }
+    }
 }
 
 /// A checked watch.

@@ -175,13 +175,7 @@ impl Event {
     /// with all of them at their longest the event is below 2 KiB, so [`MAX_EVENT`] can always be met.
     #[must_use]
     pub fn fit(mut self, max: usize) -> (Event, bool) {
-        let mut step = 0;
-        while self.to_json().len() > max {
-            if !self.finding.shorten(&mut step) {
-                break;
-            }
-        }
-        let cut = self.finding.truncated;
+        let cut = fit(&mut self, max, |message| &mut message.finding);
         (self, cut)
     }
 }
@@ -190,15 +184,20 @@ impl Alarm {
     /// Shortens the alarm as [`Event::fit`] does.
     #[must_use]
     pub fn fit(mut self, max: usize) -> (Alarm, bool) {
-        let mut step = 0;
-        while self.to_json().len() > max {
-            if !self.finding.shorten(&mut step) {
-                break;
-            }
-        }
-        let cut = self.finding.truncated;
+        let cut = fit(&mut self, max, |message| &mut message.finding);
         (self, cut)
     }
+}
+
+/// Shortens the finding of a message until its JSON has at most `max` bytes; tells whether anything was left out.
+fn fit<M: Message>(message: &mut M, max: usize, finding: impl Fn(&mut M) -> &mut Finding) -> bool {
+    let mut step = 0;
+    while message.to_json().len() > max {
+        if !finding(message).shorten(&mut step) {
+            break;
+        }
+    }
+    finding(message).truncated
 }
 
 impl Finding {
