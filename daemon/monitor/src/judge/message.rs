@@ -82,6 +82,7 @@ pub(super) fn running(judge: &AssetJudge, speed: Option<ShaftSpeed>) -> Running 
     Running {
         state,
         state_code: state.code(),
+        since: judge.running.since().map(|since| Instant(since.ns())),
         operating: None,
         rpm,
         rpm_quality,

@@ -137,8 +137,12 @@ fn status(status: &Status) -> String {
         .running
         .rpm
         .map_or_else(|| "no speed".into(), |rpm| format!("{rpm:.0} r/min"));
+    let since = status
+        .running
+        .since
+        .map_or_else(String::new, |since| format!(" since {}", seconds(since.0)));
     let mut text = format!(
-        "status {} {rpm} {}",
+        "status {}{since} {rpm} {}",
         status.running.state, status.running.rpm_quality
     );
     for point in &status.points {

@@ -37,6 +37,8 @@ pub struct Running {
     pub state: RunState,
     /// Code of the state.
     pub state_code: u8,
+    /// Since when it has been in that state, in signal time; null while nothing is known.
+    pub since: Option<Instant>,
     /// Named operating state such as `high flow`; null when none is defined.
     pub operating: Option<String>,
     /// Shaft speed in r/min.

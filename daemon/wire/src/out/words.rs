@@ -129,12 +129,14 @@ words! {
         Unknown 0 "unknown",
         /// At rest.
         Stopped 1 "stopped",
-        /// Running up.
+        /// Running up, from rest or to a higher speed.
         Starting 2 "starting",
         /// Running.
         Running 3 "running",
-        /// Running down.
+        /// Not sent: `coasting` tells of every fall in speed, to rest or not.
         Stopping 4 "stopping",
+        /// Running down, to rest or to a lower speed.
+        Coasting 5 "coasting",
     }
 }
 

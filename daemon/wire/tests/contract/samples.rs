@@ -44,6 +44,7 @@ pub(crate) fn running() -> Running {
     Running {
         state: RunState::Running,
         state_code: RunState::Running.code(),
+        since: Some(Instant(1_796_094_000_000_000_000)),
         operating: None,
         rpm: Some(1482.3),
         rpm_quality: Quality::Good,
@@ -102,8 +103,8 @@ pub(crate) fn point(name: &str) -> PointStatus {
         quality: Quality::Good,
         age_s: Some(12),
         values: vec![
-            measured("velocity", 2.134_56, "mm/s rms"),
-            measured("acceleration", 5.678_9, "m/s2 rms"),
+            measured("velocity_rms", 2.134_56, "mm/s rms"),
+            measured("high_band_rms", 5.678_9, "m/s2 rms"),
         ],
         not_verified: vec!["rate".into()],
     }

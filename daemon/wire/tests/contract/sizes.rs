@@ -2,7 +2,7 @@
 
 use humward_wire::out::{
     Event, MAX_EVENT, MAX_STATUS, MAX_TEXT, Measured, Message, Open, Quality, Severity, Standing,
-    State, Zoned,
+    State, Status, Zoned,
 };
 
 use crate::samples::{alarm, event, finding, header, id, last_running, line, measured, status};
@@ -30,17 +30,34 @@ fn crowded() -> Event {
     event
 }
 
+/// The status of four points with nothing open.
+fn quiet() -> Status {
+    Status {
+        open: Vec::new(),
+        open_count: 0,
+        ..status()
+    }
+}
+
 #[test]
 fn an_ordinary_event_alarm_and_four_point_status_fit_uncut() {
     for (size, max) in [
         (event().to_json().len(), MAX_EVENT),
         (alarm().to_json().len(), MAX_EVENT),
-        (status().to_json().len(), MAX_STATUS),
+        (quiet().to_json().len(), MAX_STATUS),
     ] {
         assert!(size <= max, "{size} bytes for {max}");
     }
-    assert!(!event().fit(MAX_EVENT).1 && !status().fit(MAX_STATUS).1);
+    assert!(!event().fit(MAX_EVENT).1 && !quiet().fit(MAX_STATUS).1);
     assert_eq!((MAX_EVENT, MAX_STATUS), (2048, 1536));
+}
+
+#[test]
+fn an_open_occurrence_costs_a_four_point_status_one_value_at_most() {
+    let (cut, _) = status().fit(MAX_STATUS);
+    let values: Vec<usize> = cut.points.iter().map(|point| point.values.len()).collect();
+    assert!(values.iter().sum::<usize>() >= 7, "{values:?}");
+    assert_eq!((cut.open, cut.running), (status().open, status().running));
 }
 
 #[test]
