@@ -1,0 +1,18 @@
+//! `humward-sim`: what accelerometers on pumps would send, with the truth beside it.
+//!
+//! In: a scenario (TOML: assets, points, faults, sensors, transport, one seed). Out: the messages a plant would put on
+//! its broker, in order of arrival, and the truth: what was injected, when, and which lines to expect. Samples are
+//! computed in f64, m/s², from closed forms; nothing here is shared with the daemon but the wire. The same scenario
+//! and seed give the same bytes on the same kind of machine.
+//!
+//! Every signal made here is simulated and says so. Checked by `tests/physics.rs` against closed form and by
+//! `tests/physics.py` against scipy, never against the daemon's own analysis.
+
+pub mod fault;
+pub mod machine;
+pub mod random;
+pub mod scenario;
+pub mod sensor;
+pub mod transport;
+pub mod wave;
+pub mod world;

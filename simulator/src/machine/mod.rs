@@ -1,0 +1,13 @@
+//! The machine: supply, shaft, load, the way to a sensor, and what a healthy pump set sounds like.
+
+mod background;
+mod healthy;
+mod motion;
+mod path;
+mod supply;
+
+pub use background::{BACKGROUND_LINES, background};
+pub use healthy::healthy;
+pub use motion::Motion;
+pub use path::Path;
+pub use supply::Supply;

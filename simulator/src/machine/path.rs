@@ -1,0 +1,108 @@
+//! The way from a force in the machine to a sensor on it.
+//!
+//! Response: g (1 + sum p_m r² / (1 - r² + 2 i zeta r)), r = f / f_m: a base gain and the acceleration of a few single
+//! degree of freedom modes (Den Hartog; Rao, from memory). Gain, modes, damping and shares are drawn; below 200 Hz the
+//! response stays within a factor of 1.6 of 1, so a level stated in a scenario is roughly what a point hears there.
+//! Checked by `tests/physics.rs`.
+
+use num_complex::Complex64;
+
+use crate::random::Draw;
+use crate::wave::Mode;
+
+/// A drawn path.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Path {
+    gain: f64,
+    modes: Vec<Mode>,
+    ringing: Vec<Mode>,
+}
+
+impl Path {
+    /// A path at a machine whose sensors sample `rate_hz`; modes that ring stay below 0.42 of it.
+    #[must_use]
+    pub fn drawn(mut draw: Draw, rate_hz: f64) -> Path {
+        let modes = [(300.0, 700.0), (900.0, 1800.0), (2200.0, 4500.0)]
+            .into_iter()
+            .map(|(low, high)| Mode {
+                hz: draw.log_between(low, high),
+                damping: draw.between(0.02, 0.06),
+                gain: draw.between(0.05, 0.3),
+            })
+            .collect();
+        let highest = (0.42 * rate_hz).min(8000.0);
+        let lowest = (0.16 * rate_hz).min(2000.0);
+        let first = draw.log_between(lowest, (lowest * highest).sqrt());
+        let second = draw.log_between(first * 1.15, highest.max(first * 1.2));
+        let share = draw.between(0.25, 0.6);
+        let ringing = vec![
+            Mode {
+                hz: first,
+                damping: draw.between(0.015, 0.05),
+                gain: 1.0 - share,
+            },
+            Mode {
+                hz: second,
+                damping: draw.between(0.015, 0.05),
+                gain: share,
+            },
+        ];
+        Path {
+            gain: draw.gain_db(1.5),
+            modes,
+            ringing,
+        }
+    }
+
+    /// A path that changes nothing: for checks of closed forms.
+    #[must_use]
+    pub fn plain() -> Path {
+        Path {
+            gain: 1.0,
+            modes: Vec::new(),
+            ringing: Vec::new(),
+        }
+    }
+
+    /// The same path weaker or stronger by `factor`.
+    #[must_use]
+    pub fn times(&self, factor: f64) -> Path {
+        Path {
+            gain: self.gain * factor,
+            ..self.clone()
+        }
+    }
+
+    /// Acceleration heard per acceleration at the source.
+    #[must_use]
+    pub fn response(&self, hz: f64) -> Complex64 {
+        let modes: Complex64 = self
+            .modes
+            .iter()
+            .map(|mode| {
+                let r = hz / mode.hz;
+                Complex64::from(mode.gain * r * r)
+                    / Complex64::new(1.0 - r * r, 2.0 * mode.damping * r)
+            })
+            .sum();
+        (modes + 1.0) * self.gain
+    }
+
+    /// The high modes that impacts ring, with the path's base gain in their shares.
+    #[must_use]
+    pub fn ringing(&self) -> Vec<Mode> {
+        self.ringing
+            .iter()
+            .map(|mode| Mode {
+                gain: mode.gain * self.gain,
+                ..*mode
+            })
+            .collect()
+    }
+
+    /// The base gain.
+    #[must_use]
+    pub fn gain(&self) -> f64 {
+        self.gain
+    }
+}

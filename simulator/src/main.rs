@@ -1,0 +1,3 @@
+//! `humward-sim`: synthetic pump signals with known truth.
+
+fn main() {}

@@ -1,0 +1,366 @@
+//! Reading and checking a scenario.
+
+use std::path::Path;
+
+use humward_wire::id::Id;
+
+use super::{Asset, Point, Scenario, ScenarioFault, catalogue, find};
+
+/// The scenario of the catalogue, or the file, called `name`.
+///
+/// # Errors
+/// [`ScenarioFault`]: not found, unreadable, not TOML of this shape, or values that do not fit; all of those at once.
+pub fn load(name: &str) -> Result<Scenario, ScenarioFault> {
+    if let Some(entry) = find(name) {
+        return parse(entry.name, entry.text);
+    }
+    let path = Path::new(name);
+    if !path.exists() {
+        let near = catalogue()
+            .into_iter()
+            .map(|entry| entry.name)
+            .min_by_key(|known| distance(known, name))
+            .filter(|known| distance(known, name) <= 3)
+            .map(str::to_owned);
+        return Err(ScenarioFault::Unknown {
+            name: name.to_owned(),
+            near,
+        });
+    }
+    let text = std::fs::read_to_string(path).map_err(|cause| ScenarioFault::Unreadable {
+        name: name.to_owned(),
+        cause,
+    })?;
+    parse(name, &text)
+}
+
+/// Letters to change, add or leave out to get from `a` to `b` (Levenshtein).
+fn distance(a: &str, b: &str) -> usize {
+    let b: Vec<char> = b.chars().collect();
+    let mut row: Vec<usize> = (0..=b.len()).collect();
+    for (i, from) in a.chars().enumerate() {
+        let mut diagonal = row[0];
+        row[0] = i + 1;
+        for (j, to) in b.iter().enumerate() {
+            let changed = diagonal + usize::from(from != *to);
+            diagonal = row[j + 1];
+            row[j + 1] = changed.min(row[j] + 1).min(diagonal + 1);
+        }
+    }
+    row[b.len()]
+}
+
+/// Reads the text of a scenario called `name`.
+///
+/// # Errors
+/// As [`load`].
+pub fn parse(name: &str, text: &str) -> Result<Scenario, ScenarioFault> {
+    let mut scenario: Scenario = toml::from_str(text).map_err(|cause| ScenarioFault::Syntax {
+        name: name.to_owned(),
+        cause: Box::new(cause),
+    })?;
+    scenario.name = Path::new(name).file_stem().map_or_else(
+        || name.to_owned(),
+        |stem| stem.to_string_lossy().into_owned(),
+    );
+    let mut faults = Vec::new();
+    check(&scenario, &mut faults);
+    if faults.is_empty() {
+        return Ok(scenario);
+    }
+    Err(ScenarioFault::Values {
+        name: name.to_owned(),
+        faults,
+    })
+}
+
+/// Adds a fault unless `value` lies in `low..=high`.
+pub(crate) fn within(
+    faults: &mut Vec<String>,
+    what: &str,
+    value: f64,
+    low: f64,
+    high: f64,
+    unit: &str,
+) {
+    if !(low..=high).contains(&value) {
+        faults.push(format!(
+            "{what} is {value}; allowed: {low} to {high} {unit}"
+        ));
+    }
+}
+
+fn is_id(faults: &mut Vec<String>, what: &str, text: &str) {
+    if let Err(cause) = Id::new(text) {
+        faults.push(format!("{what} {text:?}: {cause}"));
+    }
+}
+
+fn check(scenario: &Scenario, faults: &mut Vec<String>) {
+    is_id(faults, "site", &scenario.site);
+    if humward_wire::time::parse(&scenario.start).is_none() {
+        faults.push(format!(
+            "start {:?} is no time; write it like \"2026-03-02T03:00:00Z\"",
+            scenario.start
+        ));
+    }
+    within(faults, "duration", scenario.duration.0, 1.0, 32e6, "s");
+    within(faults, "line_hz", scenario.line_hz, 10.0, 400.0, "Hz");
+    within(faults, "foundation", scenario.foundation, 0.0, 1.0, "");
+    if scenario.assets.is_empty() {
+        faults.push("no asset; add at least one [[asset]] with a [[asset.point]]".to_owned());
+    }
+    for (index, asset) in scenario.assets.iter().enumerate() {
+        if scenario.assets[..index]
+            .iter()
+            .any(|other| other.id == asset.id)
+        {
+            faults.push(format!("asset {} stands twice; ids are unique", asset.id));
+        }
+        check_asset(scenario, asset, faults);
+    }
+}
+
+fn check_asset(scenario: &Scenario, asset: &Asset, faults: &mut Vec<String>) {
+    let id = &asset.id;
+    is_id(faults, "asset id", id);
+    within(
+        faults,
+        &format!("asset {id}: rpm"),
+        asset.rpm,
+        30.0,
+        60_000.0,
+        "r/min",
+    );
+    within(
+        faults,
+        &format!("asset {id}: wander_percent"),
+        asset.wander_percent,
+        0.0,
+        5.0,
+        "%",
+    );
+    within(
+        faults,
+        &format!("asset {id}: velocity_mm_s"),
+        asset.velocity_mm_s,
+        0.01,
+        50.0,
+        "mm/s rms",
+    );
+    within(
+        faults,
+        &format!("asset {id}: vanes"),
+        f64::from(asset.vanes),
+        2.0,
+        20.0,
+        "",
+    );
+    within(
+        faults,
+        &format!("asset {id}: load.mean"),
+        asset.load.mean,
+        0.05,
+        1.4,
+        "",
+    );
+    within(
+        faults,
+        &format!("asset {id}: load.over"),
+        asset.load.over.0,
+        1.0,
+        1e6,
+        "s",
+    );
+    for pair in asset.schedule.windows(2) {
+        if pair[0].0 >= pair[1].0 {
+            faults.push(format!(
+                "asset {id}: schedule goes back at {} s; times must grow",
+                pair[1].0.0
+            ));
+        }
+    }
+    for (_, rpm) in &asset.schedule {
+        within(
+            faults,
+            &format!("asset {id}: schedule"),
+            *rpm,
+            0.0,
+            60_000.0,
+            "r/min",
+        );
+    }
+    if let Some(slip) = asset.slip_at(scenario.line_hz) {
+        within(
+            faults,
+            &format!("asset {id}: slip of its motor at {} r/min", asset.rpm),
+            slip,
+            0.0,
+            0.1,
+            "",
+        );
+    }
+    if let Some(sway) = asset.sway {
+        within(
+            faults,
+            &format!("asset {id}: sway.percent"),
+            sway.percent,
+            0.0,
+            20.0,
+            "%",
+        );
+        within(
+            faults,
+            &format!("asset {id}: sway.period"),
+            sway.period.0,
+            1.0,
+            1e6,
+            "s",
+        );
+    }
+    if let Some(every) = asset.speed_every {
+        within(
+            faults,
+            &format!("asset {id}: speed_every"),
+            every.0,
+            0.1,
+            3600.0,
+            "s",
+        );
+    }
+    if let Some(process) = &asset.process {
+        within(
+            faults,
+            &format!("asset {id}: process.every"),
+            process.every.0,
+            0.1,
+            3600.0,
+            "s",
+        );
+    }
+    if asset.points.is_empty() {
+        faults.push(format!("asset {id}: no point; add a [[asset.point]]"));
+    }
+    for (index, point) in asset.points.iter().enumerate() {
+        if asset.points[..index]
+            .iter()
+            .any(|other| other.id == point.id)
+        {
+            faults.push(format!(
+                "asset {id}: point {} stands twice; ids are unique",
+                point.id
+            ));
+        }
+        check_point(id, point, faults);
+    }
+    for fault in &asset.faults {
+        fault.check(asset, faults);
+    }
+}
+
+fn check_point(asset: &str, point: &Point, faults: &mut Vec<String>) {
+    let here = format!("point {asset}/{}", point.id);
+    is_id(faults, "point id", &point.id);
+    within(
+        faults,
+        &format!("{here}: rate_hz"),
+        point.rate_hz,
+        500.0,
+        100_000.0,
+        "Hz",
+    );
+    within(
+        faults,
+        &format!("{here}: oscillator_percent"),
+        point.oscillator_percent,
+        -5.0,
+        5.0,
+        "%",
+    );
+    let samples = point.block.0 * point.rate_hz;
+    within(
+        faults,
+        &format!("{here}: block x rate_hz"),
+        samples,
+        16.0,
+        262_144.0,
+        "samples",
+    );
+    if let Some(every) = point.burst_every {
+        within(
+            faults,
+            &format!("{here}: burst_every"),
+            every.0,
+            point.block.0,
+            86_400.0,
+            "s",
+        );
+    }
+    within(
+        faults,
+        &format!("{here}: range_g"),
+        point.range_g,
+        0.1,
+        2000.0,
+        "g",
+    );
+    within(
+        faults,
+        &format!("{here}: noise_ug_rthz"),
+        point.noise_ug_rthz,
+        0.0,
+        1e5,
+        "ug/rtHz",
+    );
+    within(
+        faults,
+        &format!("{here}: offset_g"),
+        point.offset_g,
+        -2.0,
+        2.0,
+        "g",
+    );
+    within(
+        faults,
+        &format!("{here}: share"),
+        point.share,
+        0.0,
+        10.0,
+        "",
+    );
+    if let Some(resonance) = point.resonance_hz {
+        within(
+            faults,
+            &format!("{here}: resonance_hz"),
+            resonance,
+            10.0,
+            0.45 * point.rate_hz,
+            "Hz",
+        );
+    }
+    if let Some(bearing) = point.bearing {
+        within(
+            faults,
+            &format!("{here}: bearing.balls"),
+            f64::from(bearing.balls),
+            3.0,
+            60.0,
+            "",
+        );
+        let ratio = bearing.ball_diameter_mm / bearing.pitch_diameter_mm;
+        within(
+            faults,
+            &format!("{here}: ball over pitch diameter"),
+            ratio,
+            0.01,
+            0.6,
+            "",
+        );
+    }
+    for fault in &point.sensor_faults {
+        fault.check(&here, faults);
+    }
+    for fault in &point.transport_faults {
+        fault.check(&here, faults);
+    }
+}
