@@ -1,5 +1,7 @@
 //! One group of assets: the unit of thread, order and replay. It only dispatches.
 
+mod asset;
+
 use alloc::{
     collections::{BTreeMap, BTreeSet},
     sync::Arc,
@@ -17,34 +19,16 @@ use humward_wire::{
 
 use crate::{
     action::Action,
-    analysis::{Arriving, PointAnalysis, Progress, Speeds},
+    analysis::PointAnalysis,
     input::{DeadlineReason, GapCause, Identity, Input, Source},
-    judge::{AssetJudge, Context, SpeedTrack, Tally},
+    judge::{AssetJudge, Context, Tally},
     plan::{AssetPlan, GroupPlan},
-    reading::ShaftSpeed,
     time::{Arrival, SignalTime, Span},
 };
+use asset::Asset;
 
 /// Statuses due longer before an input than this are left out: a step's work stays bounded after a long silence.
 const LONGEST_CATCH_UP: Span = Span::from_secs(86_400);
-
-/// One asset's state: what may be thrown away and what must last.
-struct Asset {
-    points: Vec<PointAnalysis>,
-    judge: AssetJudge,
-}
-
-/// The speeds of one asset, as its analysis asks for them.
-struct AssetSpeeds<'a> {
-    plan: &'a AssetPlan,
-    track: &'a SpeedTrack,
-}
-
-impl Speeds for AssetSpeeds<'_> {
-    fn over(&self, start: SignalTime, end: SignalTime) -> (ShaftSpeed, bool) {
-        self.track.over(start, end, self.plan)
-    }
-}
 
 /// The state of a group, driven by [`Group::step`].
 #[derive(Default)]
@@ -433,55 +417,5 @@ impl Group {
                 }
             }
         });
-    }
-}
-
-impl Asset {
-    fn push(
-        &mut self,
-        context: Context<'_>,
-        point: usize,
-        block: &Block,
-        at: SignalTime,
-        scratch: &mut Scratch,
-        actions: &mut Vec<Action>,
-    ) -> Option<&'static str> {
-        let plan = context.plan.spec().points[point].spec();
-        let mut from = None;
-        loop {
-            let speeds = AssetSpeeds {
-                plan: context.plan,
-                track: self.judge.speeds(),
-            };
-            let arriving = Arriving {
-                block,
-                at,
-                arrival: context.arrival,
-                speeds: &speeds,
-            };
-            let analysis = &mut self.points[point];
-            match analysis.advance(plan, arriving, &mut from, scratch) {
-                Progress::Closed(reading) => {
-                    let traces = || analysis.traces();
-                    self.judge
-                        .reading(context, point, *reading, &traces, actions);
-                }
-                Progress::Done(taken) => return self.judge.block(point, taken, context.arrival),
-            }
-        }
-    }
-
-    fn close_overdue(&mut self, context: Context<'_>, point: usize, actions: &mut Vec<Action>) {
-        let plan = context.plan.spec().points[point].spec();
-        let speeds = AssetSpeeds {
-            plan: context.plan,
-            track: self.judge.speeds(),
-        };
-        let reading = self.points[point].close_overdue(plan, context.arrival, &speeds);
-        if let Some(reading) = reading {
-            let analysis = &self.points[point];
-            self.judge
-                .reading(context, point, reading, &|| analysis.traces(), actions);
-        }
     }
 }
