@@ -8,12 +8,12 @@ use std::collections::VecDeque;
 use std::sync::Arc;
 
 use crate::fault::Seat;
-use crate::machine::{Motion, Path, Supply, background, healthy};
+use crate::machine::{Motion, Path, Supply, background, electrical, healthy};
 use crate::random::Draw;
 use crate::scenario::{Asset, Point, Scenario};
 use crate::sensor::Sensor;
 use crate::transport::Delivery;
-use crate::wave::{State, Stretch, TICK_S, Tick, Wave};
+use crate::wave::{Growth, Law, State, Stretch, TICK_S, Tick, Wave};
 
 /// A wave and the machine that drives it.
 pub struct Heard {
@@ -89,6 +89,15 @@ pub fn heard(scenario: &Scenario, index: usize, point: &Point) -> Vec<Heard> {
         };
         let machine_here = here.part(&asset.id);
         add(healthy(asset, point, &way, &machine_here));
+        let usual = asset.motor.map_or(0.0, |motor| motor.electrical_mm_s);
+        let law = Law::growing(Growth::constant(usual), 0.0);
+        add(electrical(
+            asset,
+            scenario.line_hz,
+            law,
+            &way,
+            &machine_here,
+        ));
         for (number, fault) in asset.faults.iter().enumerate() {
             let kind = fault.kind();
             let name = format!("fault {number}");
@@ -105,6 +114,7 @@ pub fn heard(scenario: &Scenario, index: usize, point: &Point) -> Vec<Heard> {
                 point,
                 path: Arc::clone(&way),
                 impact_gain,
+                line_hz: scenario.line_hz,
                 draw: root.part(&asset.id).part(&name),
                 local: machine_here.part(&name),
             }));

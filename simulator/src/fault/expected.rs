@@ -2,6 +2,8 @@
 
 use serde::Serialize;
 
+use crate::scenario::Asset;
+
 /// Where a line is to be seen.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Serialize)]
 #[serde(rename_all = "snake_case")]
@@ -28,4 +30,18 @@ pub struct Expected {
     /// At full growth, nominal speed and rated load, before the path: mm/s rms, or m/s² for bursts; `None` where
     /// only its place is stated.
     pub level: Option<f64>,
+}
+
+impl Expected {
+    /// A multiple of the shaft in the velocity spectrum, `level` mm/s rms.
+    #[must_use]
+    pub fn velocity(line: String, asset: &Asset, order: f64, level: f64) -> Expected {
+        Expected {
+            line,
+            hz: order * asset.nominal_rpm() / 60.0,
+            order,
+            seen: Seen::Velocity,
+            level: Some(level),
+        }
+    }
 }

@@ -43,7 +43,7 @@ impl Kind for Imbalance {
         vec![Box::new(Lines::new(vec![line], seat.path.clone()))]
     }
 
-    fn expected(&self, asset: &Asset, _: &Draw) -> Vec<Expected> {
+    fn expected(&self, asset: &Asset, _: f64, _: &Draw) -> Vec<Expected> {
         vec![Expected {
             line: "1x".to_owned(),
             hz: asset.nominal_rpm() / 60.0,

@@ -14,6 +14,8 @@ use crate::wave::Mode;
 #[derive(Clone, Debug, PartialEq)]
 pub struct Path {
     gain: f64,
+    /// Above this the sensor's anti-alias filter lets nothing through, Hz.
+    highest_hz: f64,
     modes: Vec<Mode>,
     ringing: Vec<Mode>,
 }
@@ -49,6 +51,7 @@ impl Path {
         ];
         Path {
             gain: draw.gain_db(1.5),
+            highest_hz: 0.45 * rate_hz,
             modes,
             ringing,
         }
@@ -59,6 +62,7 @@ impl Path {
     pub fn plain() -> Path {
         Path {
             gain: 1.0,
+            highest_hz: f64::INFINITY,
             modes: Vec::new(),
             ringing: Vec::new(),
         }
@@ -73,9 +77,12 @@ impl Path {
         }
     }
 
-    /// Acceleration heard per acceleration at the source.
+    /// Acceleration heard per acceleration at the source; 0 above 0.45 of the sampling rate.
     #[must_use]
     pub fn response(&self, hz: f64) -> Complex64 {
+        if hz > self.highest_hz {
+            return Complex64::ZERO;
+        }
         let modes: Complex64 = self
             .modes
             .iter()

@@ -132,8 +132,11 @@ impl Lines {
         if factor == 0.0 {
             return None;
         }
-        let (level, cycles) = line.sway.at(state.at_s);
         let heard = self.path.response(line.pitch.hz(state));
+        if heard.norm_sqr() == 0.0 {
+            return None;
+        }
+        let (level, cycles) = line.sway.at(state.at_s);
         let turns = line.pitch.cycles(state) + cycles;
         Some((
             line.peak_ms2 * factor * level * heard.norm(),

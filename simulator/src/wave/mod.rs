@@ -53,6 +53,9 @@ pub struct Tick {
     pub to: State,
 }
 
+/// Standard gravity, m/s² (3rd CGPM 1901).
+pub const G0: f64 = 9.80665;
+
 /// Longest tick, s: speed, load and levels are taken as linear within it.
 pub const TICK_S: f64 = 0.01;
 
