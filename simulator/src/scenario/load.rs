@@ -3,8 +3,9 @@
 use std::path::Path;
 
 use humward_wire::id::Id;
+use humward_wire::topic::Topics;
 
-use super::{Asset, Point, Scenario, ScenarioFault, catalogue, find};
+use super::{Asset, Scenario, ScenarioFault, catalogue, find};
 
 /// The scenario of the catalogue, or the file, called `name`.
 ///
@@ -90,7 +91,8 @@ pub(crate) fn within(
     }
 }
 
-fn is_id(faults: &mut Vec<String>, what: &str, text: &str) {
+/// Adds a fault unless `text` is an id.
+pub(super) fn is_id(faults: &mut Vec<String>, what: &str, text: &str) {
     if let Err(cause) = Id::new(text) {
         faults.push(format!("{what} {text:?}: {cause}"));
     }
@@ -98,6 +100,11 @@ fn is_id(faults: &mut Vec<String>, what: &str, text: &str) {
 
 fn check(scenario: &Scenario, faults: &mut Vec<String>) {
     is_id(faults, "site", &scenario.site);
+    if let Ok(site) = Id::new(&scenario.site)
+        && let Err(cause) = Topics::new(&scenario.root, &site)
+    {
+        faults.push(format!("root {:?}: {cause}", scenario.root));
+    }
     if humward_wire::time::parse(&scenario.start).is_none() {
         faults.push(format!(
             "start {:?} is no time; write it like \"2026-03-02T03:00:00Z\"",
@@ -238,6 +245,23 @@ fn check_asset(scenario: &Scenario, asset: &Asset, faults: &mut Vec<String>) {
             "s",
         );
     }
+    if let Some(run) = asset
+        .process
+        .as_ref()
+        .and_then(|process| process.run.as_ref())
+    {
+        is_id(faults, &format!("asset {id}: process.run"), run);
+    }
+    if let Some(flow) = asset.process.as_ref().and_then(|process| process.flow_m3_h) {
+        within(
+            faults,
+            &format!("asset {id}: process.flow_m3_h"),
+            flow,
+            0.0,
+            1e6,
+            "m3/h",
+        );
+    }
     if asset.points.is_empty() {
         faults.push(format!("asset {id}: no point; add a [[asset.point]]"));
     }
@@ -251,116 +275,9 @@ fn check_asset(scenario: &Scenario, asset: &Asset, faults: &mut Vec<String>) {
                 point.id
             ));
         }
-        check_point(id, point, faults);
+        point.check(id, faults);
     }
     for fault in &asset.faults {
         fault.check(asset, faults);
-    }
-}
-
-fn check_point(asset: &str, point: &Point, faults: &mut Vec<String>) {
-    let here = format!("point {asset}/{}", point.id);
-    is_id(faults, "point id", &point.id);
-    within(
-        faults,
-        &format!("{here}: rate_hz"),
-        point.rate_hz,
-        500.0,
-        100_000.0,
-        "Hz",
-    );
-    within(
-        faults,
-        &format!("{here}: oscillator_percent"),
-        point.oscillator_percent,
-        -5.0,
-        5.0,
-        "%",
-    );
-    let samples = point.block.0 * point.rate_hz;
-    within(
-        faults,
-        &format!("{here}: block x rate_hz"),
-        samples,
-        16.0,
-        262_144.0,
-        "samples",
-    );
-    if let Some(every) = point.burst_every {
-        within(
-            faults,
-            &format!("{here}: burst_every"),
-            every.0,
-            point.block.0,
-            86_400.0,
-            "s",
-        );
-    }
-    within(
-        faults,
-        &format!("{here}: range_g"),
-        point.range_g,
-        0.1,
-        2000.0,
-        "g",
-    );
-    within(
-        faults,
-        &format!("{here}: noise_ug_rthz"),
-        point.noise_ug_rthz,
-        0.0,
-        1e5,
-        "ug/rtHz",
-    );
-    within(
-        faults,
-        &format!("{here}: offset_g"),
-        point.offset_g,
-        -2.0,
-        2.0,
-        "g",
-    );
-    within(
-        faults,
-        &format!("{here}: share"),
-        point.share,
-        0.0,
-        10.0,
-        "",
-    );
-    if let Some(resonance) = point.resonance_hz {
-        within(
-            faults,
-            &format!("{here}: resonance_hz"),
-            resonance,
-            10.0,
-            0.45 * point.rate_hz,
-            "Hz",
-        );
-    }
-    if let Some(bearing) = point.bearing {
-        within(
-            faults,
-            &format!("{here}: bearing.balls"),
-            f64::from(bearing.balls),
-            3.0,
-            60.0,
-            "",
-        );
-        let ratio = bearing.ball_diameter_mm / bearing.pitch_diameter_mm;
-        within(
-            faults,
-            &format!("{here}: ball over pitch diameter"),
-            ratio,
-            0.01,
-            0.6,
-            "",
-        );
-    }
-    for fault in &point.sensor_faults {
-        fault.check(&here, faults);
-    }
-    for fault in &point.transport_faults {
-        fault.check(&here, faults);
     }
 }

@@ -10,14 +10,17 @@ mod fault;
 mod load;
 mod point;
 mod seconds;
+mod window;
 
 pub use asset::{Asset, LoadWalk, Motor, MotorKind, Process, SwayOf};
 pub use catalogue::{Entry, catalogue, find};
 pub use fault::ScenarioFault;
+use load::is_id;
 pub(crate) use load::within;
 pub use load::{load, parse};
 pub use point::{Bearing, Encoding, Point, SampleUnit};
 pub use seconds::Seconds;
+pub use window::Window;
 
 use serde::Deserialize;
 

@@ -2,9 +2,12 @@
 
 use serde::Deserialize;
 
-use super::Seconds;
+use super::{Seconds, is_id, within};
 use crate::sensor::SensorFault;
 use crate::transport::TransportFault;
+
+/// Largest block, bytes as sent: what one message of the daemon's inbound contract may have.
+const MAX_BLOCK_BYTES: f64 = 1e6;
 
 /// A sensor at a bearing and how its blocks travel.
 #[derive(Clone, Debug, PartialEq, Deserialize)]
@@ -39,9 +42,15 @@ pub struct Point {
     /// Own resonance, Hz; must lie below 0.45 x rate to be shown.
     #[serde(default)]
     pub resonance_hz: Option<f64>,
+    /// Damping ratio of that resonance.
+    #[serde(default = "resonance_damping")]
+    pub resonance_damping: f64,
     /// Steady offset, g: gravity's share along the axis.
     #[serde(default)]
     pub offset_g: f64,
+    /// Bias voltage told in each block, V; none if not given.
+    #[serde(default)]
+    pub bias_volts: Option<f64>,
     /// Share of the machine's own vibration that this axis feels.
     #[serde(default = "one")]
     pub share: f64,
@@ -78,6 +87,10 @@ fn range_g() -> f64 {
 
 fn noise_ug_rthz() -> f64 {
     60.0
+}
+
+fn resonance_damping() -> f64 {
+    0.02
 }
 
 fn one() -> f64 {
@@ -145,5 +158,80 @@ impl Point {
     #[must_use]
     pub fn true_rate_hz(&self) -> f64 {
         self.rate_hz * (1.0 + self.oscillator_percent / 100.0)
+    }
+
+    /// Samples in a block.
+    #[must_use]
+    pub fn block_samples(&self) -> usize {
+        (self.block.0 * self.rate_hz).round() as usize
+    }
+
+    /// One step of 16-bit samples, g: range / 32768.
+    #[must_use]
+    pub fn step_g(&self) -> f64 {
+        self.range_g / 32768.0
+    }
+
+    /// Adds what does not fit.
+    pub(crate) fn check(&self, asset: &str, faults: &mut Vec<String>) {
+        let here = format!("point {asset}/{}", self.id);
+        is_id(faults, &format!("asset {asset}: point id"), &self.id);
+        let mut number = |key: &str, value: f64, low: f64, high: f64, unit: &str| {
+            within(faults, &format!("{here}: {key}"), value, low, high, unit);
+        };
+        number("rate_hz", self.rate_hz, 500.0, 100_000.0, "Hz");
+        number(
+            "oscillator_percent",
+            self.oscillator_percent,
+            -5.0,
+            5.0,
+            "%",
+        );
+        let samples = self.block.0 * self.rate_hz;
+        number("block x rate_hz", samples, 16.0, 262_144.0, "samples");
+        let bytes = samples * self.encoding.bytes_per_sample();
+        number("block in bytes", bytes, 0.0, MAX_BLOCK_BYTES, "bytes");
+        if let Some(every) = self.burst_every {
+            number("burst_every", every.0, self.block.0, 86_400.0, "s");
+        }
+        number("range_g", self.range_g, 0.1, 2000.0, "g");
+        number("noise_ug_rthz", self.noise_ug_rthz, 0.0, 1e5, "ug/rtHz");
+        number("offset_g", self.offset_g, -2.0, 2.0, "g");
+        number(
+            "bias_volts",
+            self.bias_volts.unwrap_or(0.0),
+            -50.0,
+            50.0,
+            "V",
+        );
+        number("share", self.share, 0.0, 10.0, "");
+        if let Some(resonance) = self.resonance_hz {
+            let highest = 0.45 * self.rate_hz;
+            number("resonance_hz", resonance, 10.0, highest, "Hz");
+            number("resonance_damping", self.resonance_damping, 0.001, 1.0, "");
+        }
+        if let Some(bearing) = self.bearing {
+            number("bearing.balls", f64::from(bearing.balls), 3.0, 60.0, "");
+            let ratio = bearing.ball_diameter_mm / bearing.pitch_diameter_mm;
+            number("ball over pitch diameter", ratio, 0.01, 0.6, "");
+            number("bearing.angle_deg", bearing.angle_deg, 0.0, 60.0, "degrees");
+        }
+        for fault in &self.sensor_faults {
+            fault.check(&here, faults);
+        }
+        for fault in &self.transport_faults {
+            fault.check(&here, faults);
+        }
+    }
+}
+
+impl Encoding {
+    /// What a sample takes at most: two or four bytes, or the text of a number with its comma.
+    fn bytes_per_sample(self) -> f64 {
+        match self {
+            Encoding::CborS16 => 2.0,
+            Encoding::CborF32 => 4.0,
+            Encoding::Json => 16.0,
+        }
     }
 }
