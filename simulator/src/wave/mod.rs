@@ -18,7 +18,7 @@ pub use law::{Gate, Growth, GrowthLaw, Law, LoadLaw};
 pub use line::{Line, Lines, Pitch, Sway};
 pub use noise::{Noise, Voice};
 pub use pulse::HalfSines;
-pub use strikes::{Strength, Strikes, Timing};
+pub use strikes::{Strength, Strike, Strikes, Timing};
 
 use num_complex::Complex64;
 
@@ -60,12 +60,13 @@ pub const G0: f64 = 9.80665;
 pub const TICK_S: f64 = 0.01;
 
 impl Tick {
-    /// The machine at `at_s` within the tick: speed and load linear, turns their integral.
+    /// The machine at `at_s` within the tick, or a sample's length beyond it: speed and load linear, turns their
+    /// integral.
     #[must_use]
     pub fn at(&self, at_s: f64) -> State {
         let (a, b) = (&self.from, &self.to);
         let length = b.at_s - a.at_s;
-        let share = ((at_s - a.at_s) / length).clamp(0.0, 1.0);
+        let share = (at_s - a.at_s) / length;
         let mix = |from: f64, to: f64| from + (to - from) * share;
         let integral = |turns: f64, from: f64, to: f64| {
             turns + share * length * (from + 0.5 * (to - from) * share)
