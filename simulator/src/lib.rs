@@ -8,11 +8,15 @@
 //! Every signal made here is simulated and says so. Checked by `tests/physics.rs` against closed form and by
 //! `tests/physics.py` against scipy, never against the daemon's own analysis.
 
+pub mod cli;
+pub mod exit;
 pub mod explain;
 pub mod fault;
 pub mod machine;
 pub mod plant;
+pub mod play;
 pub mod random;
+pub mod render;
 pub mod scenario;
 pub mod sensor;
 pub mod transport;

@@ -1,3 +1,8 @@
-//! `humward-sim`: synthetic pump signals with known truth.
+//! The `humward-sim` program: synthetic pump signals with known truth.
 
-fn main() {}
+use std::io;
+use std::process::ExitCode;
+
+fn main() -> ExitCode {
+    humward_sim::cli::run(std::env::args_os(), &mut io::stdout(), &mut io::stderr()).into()
+}

@@ -6,13 +6,16 @@ use serde::{Deserialize, Deserializer, de::Error};
 #[derive(Clone, Copy, Debug, PartialEq, PartialOrd, Default)]
 pub struct Seconds(pub f64);
 
-impl<'de> Deserialize<'de> for Seconds {
-    fn deserialize<D: Deserializer<'de>>(deserializer: D) -> Result<Seconds, D::Error> {
-        let text = String::deserialize(deserializer)?;
+impl Seconds {
+    /// Reads a text such as `90s`.
+    ///
+    /// # Errors
+    /// What it is not, with an example of what it can be.
+    pub fn parse(text: &str) -> Result<Seconds, String> {
         let wrong = |why: &str| {
-            D::Error::custom(format!(
+            format!(
                 "{text:?} is not a length of time: {why}; write it like \"90s\", \"10min\" or \"2h\""
-            ))
+            )
         };
         let span: jiff::SignedDuration =
             text.parse().map_err(|_| wrong("no number with a unit"))?;
@@ -20,5 +23,11 @@ impl<'de> Deserialize<'de> for Seconds {
             return Err(wrong("it is negative"));
         }
         Ok(Seconds(span.as_secs_f64()))
+    }
+}
+
+impl<'de> Deserialize<'de> for Seconds {
+    fn deserialize<D: Deserializer<'de>>(deserializer: D) -> Result<Seconds, D::Error> {
+        Seconds::parse(&String::deserialize(deserializer)?).map_err(D::Error::custom)
     }
 }
