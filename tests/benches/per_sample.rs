@@ -19,7 +19,7 @@ use humward_monitor::{
     judge::{AssetJudge, Context},
     plan::{
         AssetPlan, AssetSpec, Calibration, GroupPlan, Limits, Measure, Persistence, PointPlan,
-        PointSpec, Quantity, Race, RunningRule, SpeedRange, WatchPlan, WatchSpec,
+        PointSpec, Quantity, Race, RunningRule, SpeedRange, StartingRule, WatchPlan, WatchSpec,
     },
     reading::{Reading, ShaftSpeed},
     time::{Arrival, SignalTime, Span},
@@ -219,6 +219,7 @@ fn plan() -> Result<Arc<GroupPlan>, Failure> {
             speed_valid: Span::from_secs(86_400),
         },
         run_signal: None,
+        starting: StartingRule::USUAL,
         zones: None,
         reading_every: Span::from_secs(10),
         status_every: Span::from_secs(300),

@@ -116,6 +116,7 @@ impl Group {
             Input::Deadline(DeadlineReason::RecordingEnd) => self.close_all(arrival, actions),
             Input::Deadline(
                 DeadlineReason::ReadingOverdue
+                | DeadlineReason::SpeedStands
                 | DeadlineReason::SensorOverdue
                 | DeadlineReason::StatusDue,
             ) => {}
@@ -128,12 +129,7 @@ impl Group {
         self.identity.as_ref()?;
         let plan = self.plan.as_ref()?;
         let of_asset = |(asset, plan): (&Asset, &AssetPlan)| {
-            let (due, by_sensor) = asset.judge.due(plan);
-            let reason = if by_sensor {
-                DeadlineReason::SensorOverdue
-            } else {
-                DeadlineReason::StatusDue
-            };
+            let (due, reason) = asset.judge.due(plan);
             let overdue = asset.points.iter().filter_map(PointAnalysis::overdue).min();
             match overdue {
                 Some(overdue) if overdue <= due => (overdue, DeadlineReason::ReadingOverdue),
@@ -226,12 +222,11 @@ impl Group {
     fn clock_step(&mut self, by: i64) {
         let jump = Span::from_ns(by.saturating_sub(self.ahead.ns()));
         self.ahead = Span::from_ns(self.ahead.ns().saturating_sub(by));
-        let back = Span::from_ns(by.saturating_neg());
         for asset in &mut self.assets {
             for point in &mut asset.points {
                 point.wall_clock_set(jump);
             }
-            asset.judge.wall_clock_set(jump, back);
+            asset.judge.wall_clock_set(jump, by);
         }
     }
 

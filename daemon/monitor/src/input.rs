@@ -44,6 +44,8 @@ pub struct Source {
 pub enum DeadlineReason {
     /// A reading's time is over and its last blocks did not come.
     ReadingOverdue,
+    /// A reported speed that departs from those before has stood alone for long enough to be believed.
+    SpeedStands,
     /// A point has been silent or unusable for as long as its sensor alarm allows.
     SensorOverdue,
     /// A status is due.

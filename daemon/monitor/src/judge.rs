@@ -1,10 +1,12 @@
 //! Readings of one asset to actions: operating state, watches, instrument alarms, status.
 //!
 //! What lasts is small: open occurrences, how far each persistence has come, the event number. A machine that
-//! stands still or changes speed is not judged; what stands open then is suspended, not ended.
+//! stands still or changes speed is not judged by running limits; what stands open then is suspended, not ended.
+//! While it starts, danger stays armed at a multiple (`armed`).
 
 mod account;
 mod announce;
+mod armed;
 mod counter;
 mod message;
 mod replan;
@@ -12,11 +14,13 @@ mod running;
 mod sensor;
 mod sentence;
 mod share;
+mod speeds;
 mod status;
 mod stops;
 mod tally;
 #[cfg(test)]
 pub(crate) mod testing;
+mod trend;
 mod watch;
 mod words;
 
@@ -24,20 +28,23 @@ use alloc::{collections::BTreeMap, string::String, vec::Vec};
 
 use humward_wire::{process::Process, refusal::Refusal};
 
-pub use running::{Operating, SpeedTrack};
+pub use running::Operating;
+pub use speeds::SpeedTrack;
 
 use crate::{
     action::Action,
     analysis::{Taken, Traces},
-    input::{GapCause, Identity},
+    input::{DeadlineReason, GapCause, Identity},
     plan::AssetPlan,
     reading::Reading,
     time::{Arrival, SignalTime, Span},
 };
+use announce::Turn;
 use running::RunningState;
 use sensor::{Cause, SensorChange, SensorState};
 use share::JudgedShare;
 pub use tally::Tally;
+use trend::Report;
 use watch::WatchState;
 
 /// What every judgement needs to know besides its own state.
@@ -51,12 +58,12 @@ pub struct Context<'a> {
     pub arrival: Arrival,
 }
 
-/// Whether open occurrences are being judged.
+/// Whether running limits are being judged by.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 enum Judging {
     /// They are.
     On,
-    /// The machine does not run; they are held.
+    /// The machine does not run.
     Suspended,
     /// It runs again; so many judged readings are still to come after the time already counted.
     Resuming { left: u8, until: Option<SignalTime> },
@@ -124,12 +131,13 @@ impl AssetJudge {
         rpm: f64,
         actions: &mut Vec<Action>,
     ) {
-        // A late report of an earlier speed says nothing about now, and a fresh run signal comes first.
-        if self.speeds.report(at, rpm)
-            && !self.run_signal_fresh(context, at)
-            && self.running.by_speed(&context.plan.spec().running, at, rpm)
-        {
-            self.running_changed(context, actions);
+        // A late report of an earlier speed says nothing about now.
+        if self.speeds.report(at, rpm) {
+            let signal = self.run_signal(context, at);
+            let (spec, report) = (context.plan.spec(), Report { at, rpm });
+            if self.running.speed(spec, report, context.arrival, signal) {
+                self.running_changed(context, actions);
+            }
         }
     }
 
@@ -144,16 +152,18 @@ impl AssetJudge {
         let tells = context.plan.spec().run_signal.as_ref() == Some(&process.name);
         if tells
             && self.run_signals.report(at, process.value)
-            && self.running.by_signal(at, process.value)
+            && self
+                .running
+                .by_signal(context.plan.spec(), at, says_it_runs(process.value))
         {
             self.running_changed(context, actions);
         }
     }
 
-    /// Whether a run signal not older than a speed may be says what the machine does at `at`.
-    fn run_signal_fresh(&self, context: Context<'_>, at: SignalTime) -> bool {
+    /// What a run signal not older than a speed may be says at `at`.
+    fn run_signal(&self, context: Context<'_>, at: SignalTime) -> Option<bool> {
         let valid = context.plan.spec().running.speed_valid;
-        self.run_signals.fresh(at, valid).is_some()
+        self.run_signals.fresh(at, valid).map(says_it_runs)
     }
 
     /// What became of a block of the point; the loss it counts under, if any.
@@ -197,14 +207,16 @@ impl AssetJudge {
 
     /// Our own clock was set and stamps jumped by `jump`: nothing becomes older by that.
     ///
-    /// Set back by `back`, clocks that follow ours tell earlier times from now on: what was reported before moves with them.
-    pub fn wall_clock_set(&mut self, jump: Span, back: Span) {
+    /// It was set by `by` ns. Set back, clocks that follow ours tell earlier times from now on: what was reported
+    /// before moves with them.
+    pub fn wall_clock_set(&mut self, jump: Span, by: i64) {
+        let (forward, back) = (Span::from_ns(by), Span::from_ns(by.saturating_neg()));
         for sensor in &mut self.sensors {
             sensor.wall_clock_set(jump);
             sensor.our_gap();
         }
         self.speeds.set_back(back);
-        self.running.set_back(back);
+        self.running.wall_clock_set(forward, back);
         for reading in self
             .latest
             .iter_mut()
@@ -267,26 +279,43 @@ impl AssetJudge {
                     && let Some(change) =
                         self.watches[index].judge(&context.plan.spec().watches[index], &reading)
                 {
-                    self.watch_changed(context, index, &reading, change, traces, actions);
+                    let turn = Turn {
+                        change,
+                        armed: None,
+                    };
+                    self.watch_changed(context, index, &reading, turn, traces, actions);
                 }
             }
+        } else if !judged {
+            self.judge_armed(context, point, &reading, traces, actions);
         }
     }
 
     /// The next instant at which something is due although nothing arrives.
-    pub fn due(&self, plan: &AssetPlan) -> (Arrival, bool) {
-        let sensors = self
-            .sensors
-            .iter()
-            .filter_map(|sensor| sensor.due(plan.spec().sensor_after));
-        match sensors.min().filter(|_| self.link_up) {
-            Some(sensor) if sensor < self.status_due => (sensor, true),
-            _ => (self.status_due, false),
-        }
+    pub fn due(&self, plan: &AssetPlan) -> (Arrival, DeadlineReason) {
+        let after = plan.spec().sensor_after;
+        let sensors = self.sensors.iter().filter_map(|sensor| sensor.due(after));
+        let sensor = sensors.min().filter(|_| self.link_up);
+        let sensor = sensor.map(|due| (due, DeadlineReason::SensorOverdue));
+        let speed = self
+            .running
+            .due()
+            .map(|due| (due, DeadlineReason::SpeedStands));
+        let status = (self.status_due, DeadlineReason::StatusDue);
+        [speed, sensor].into_iter().flatten().fold(status, Ord::min)
     }
 
     /// Does what is due at the context's arrival.
     pub fn deadline(&mut self, context: Context<'_>, actions: &mut Vec<Action>) {
+        let spec = context.plan.spec();
+        let signals = &self.run_signals;
+        let signal = |at| {
+            let fresh = signals.fresh(at, spec.running.speed_valid);
+            fresh.map(says_it_runs)
+        };
+        if self.running.overdue(spec, context.arrival, signal) {
+            self.running_changed(context, actions);
+        }
         if self.link_up {
             for point in 0..self.sensors.len() {
                 let after = context.plan.spec().sensor_after;
@@ -339,4 +368,9 @@ impl AssetJudge {
     pub fn want_status(&mut self) {
         self.changed = true;
     }
+}
+
+/// What a value of the run signal says.
+fn says_it_runs(value: f64) -> bool {
+    value >= 0.5
 }

@@ -86,6 +86,16 @@ impl Doubts {
         Doubt::ALL.into_iter().filter(move |doubt| self.has(*doubt))
     }
 
+    /// Whether there is none but that the speed moves: no fault of what was measured.
+    pub fn only_moving(self) -> bool {
+        self.0 & !(1 << Doubt::SpeedMoving as u8) == 0
+    }
+
+    /// Whether it clipped and nothing else is wrong but that the speed moves: values are lower bounds.
+    pub fn is_a_bound(self) -> bool {
+        self.has(Doubt::Clipped) && Self(self.0 & !(1 << Doubt::SpeedMoving as u8)).only_clipped()
+    }
+
     /// Whether clipping is the only one.
     pub fn only_clipped(self) -> bool {
         self == Self(1 << Doubt::Clipped as u8)

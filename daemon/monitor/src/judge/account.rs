@@ -6,6 +6,7 @@ use humward_wire::out::{Instant, Line, Measured, Quality, Severity, Zoned};
 
 use super::{
     Context,
+    armed::Armed,
     message::severity_word,
     sentence::{self, clock, duration, two_digits},
     watch::Change,
@@ -34,6 +35,8 @@ pub(super) struct Account<'a> {
     pub(super) reading: &'a Reading,
     /// The limit it is told against, in the measure's unit.
     pub(super) limit: Option<f64>,
+    /// The limit it rang by while the machine did not run steadily.
+    pub(super) armed: Option<Armed>,
     pub(super) change: Change,
     pub(super) severity: Severity,
 }
@@ -205,6 +208,12 @@ pub(super) fn against(account: &Account<'_>) -> Vec<String> {
     if account.reading.doubts.has(Doubt::Clipped) {
         against.push("the sensor clipped: the value is a lower bound".into());
     }
+    if let Some(armed) = account.armed {
+        against.push(format!(
+            "measured while {}: a resonance passed on the way reads high",
+            armed.during()
+        ));
+    }
     if account.reading.gaps > 0 {
         let s = if account.reading.gaps == 1 { "" } else { "s" };
         against.push(format!(
@@ -239,9 +248,13 @@ pub(super) fn text(account: &Account<'_>, story: &Story) -> String {
         subject(account, story),
         course(account, story)
     );
-    let speed = match reading.speed {
-        ShaftSpeed::Reported(rpm) => format!("Running {rpm:.0} r/min"),
-        ShaftSpeed::Nominal(rpm) => format!("Running, speed not reported ({rpm:.0} r/min assumed)"),
+    let speed = match (reading.speed, account.armed) {
+        (ShaftSpeed::Reported(rpm), Some(_)) => format!("At {rpm:.0} r/min on average"),
+        (ShaftSpeed::Nominal(_), Some(_)) => "Speed not reported".into(),
+        (ShaftSpeed::Reported(rpm), None) => format!("Running {rpm:.0} r/min"),
+        (ShaftSpeed::Nominal(rpm), None) => {
+            format!("Running, speed not reported ({rpm:.0} r/min assumed)")
+        }
     };
     let sensor = if reading.doubts.has(Doubt::Clipped) {
         "sensor clipped"
@@ -293,12 +306,20 @@ fn subject(account: &Account<'_>, story: &Story) -> String {
             let at_least = if bound { "at least " } else { "" };
             let value = account.reading.value(spec.measure);
             let said = value.map_or_else(|| "no value".into(), two_digits);
-            let limits = match account.change {
-                Change::Raised(_) | Change::Worsened => limit(account, " (", ")"),
-                Change::Eased | Change::Cleared => String::new(),
+            let limits = match (account.change, account.armed) {
+                (_, Some(armed)) => format!(
+                    " while {} (armed at {}, {} x danger)",
+                    armed.during(),
+                    two_digits(armed.limit),
+                    armed.factor
+                ),
+                (Change::Raised(_) | Change::Worsened | Change::Reraised, None) => {
+                    limit(account, " (", ")")
+                }
+                (Change::Eased | Change::Cleared, None) => String::new(),
             };
             let risen = match (account.change, story.before.map(two_digits)) {
-                (Change::Raised(_), Some(before)) if before != said => {
+                (Change::Raised(_), Some(before)) if before != said && account.armed.is_none() => {
                     format!(", up from {before},")
                 }
                 _ => String::new(),
@@ -342,11 +363,12 @@ fn course(account: &Account<'_>, story: &Story) -> String {
         Change::Eased | Change::Cleared if valued => limit(account, ", below ", " again"),
         Change::Eased => ", below danger again".into(),
         Change::Cleared => " no longer over the limit".into(),
-        Change::Raised(_) | Change::Worsened => String::new(),
+        Change::Raised(_) | Change::Worsened | Change::Reraised => String::new(),
     };
     match account.change {
         Change::Raised(_) => format!(" since {since}"),
         Change::Worsened => format!(", worsened from alert, over its limits since {since}"),
+        Change::Reraised => format!(", again in the alarm that stands since {since}"),
         Change::Eased => format!("{below}; the alert stands since {since}"),
         Change::Cleared => {
             let held = story.since.zip(story.until);

@@ -7,8 +7,15 @@ use humward_wire::{
     out::{Event, Severity},
 };
 
-use super::{AssetJudge, Context, message, sensor::SensorChange, watch::Change};
+use super::{AssetJudge, Context, armed::Armed, message, sensor::SensorChange, watch::Change};
 use crate::{action::Action, analysis::Traces, plan::AssetPlan, reading::Reading};
+
+/// What a reading did to a watch, and the armed limit if it was that.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(super) struct Turn {
+    pub(super) change: Change,
+    pub(super) armed: Option<Armed>,
+}
 
 impl AssetJudge {
     pub(super) fn watch_changed(
@@ -16,17 +23,17 @@ impl AssetJudge {
         context: Context<'_>,
         index: usize,
         reading: &Reading,
-        change: Change,
+        turn: Turn,
         traces: &dyn Fn() -> Option<Traces>,
         actions: &mut Vec<Action>,
     ) {
         self.n += 1;
         self.changed = true;
         let id = message::event_id(context.identity, self.n);
-        if matches!(change, Change::Raised(_)) {
+        if matches!(turn.change, Change::Raised(_)) {
             self.watches[index].name_occurrence(id.clone());
         }
-        let event = message::watch_event(self, context, index, reading, change, id.clone());
+        let event = message::watch_event(self, context, index, reading, turn, id.clone());
         let closed = self.watches[index].take_closed().is_some();
         let full_name = context.plan.spec().watches[index].full_name();
         let open = (!closed).then(|| message::alarm_of(&event));
@@ -36,8 +43,10 @@ impl AssetJudge {
             watch: full_name.into(),
             open,
         });
-        if matches!(change, Change::Raised(_) | Change::Worsened)
-            && let Some(traces) = traces()
+        if matches!(
+            turn.change,
+            Change::Raised(_) | Change::Worsened | Change::Reraised
+        ) && let Some(traces) = traces()
         {
             actions.push(Action::Evidence(message::evidence(
                 context, index, reading, id, traces,

@@ -34,12 +34,23 @@ impl Counter {
         reading: &Reading,
         persistence: Persistence,
     ) -> bool {
+        self.feed_part(holds, reading.start, reading.end, persistence)
+    }
+
+    /// As [`feed`](Self::feed), with the part of a reading from `from` to `to`.
+    pub(super) fn feed_part(
+        &mut self,
+        holds: bool,
+        from: SignalTime,
+        to: SignalTime,
+        persistence: Persistence,
+    ) -> bool {
         self.history = self.history << 1 | u64::from(holds);
         if holds {
             self.in_row = self.in_row.saturating_add(1);
-            self.credit = self.credit.plus(reading.length());
+            self.credit = self.credit.plus(to.since(from));
             if self.since.is_none() {
-                self.since = Some(reading.start);
+                self.since = Some(from);
             }
         } else {
             self.in_row = 0;

@@ -23,6 +23,7 @@ pub(super) use instrument::{sensor_event, sensor_watch};
 use super::{
     AssetJudge, Context, Operating,
     account::{self, Account},
+    announce::Turn,
     sentence,
     watch::Change,
 };
@@ -76,7 +77,9 @@ pub(super) fn running(judge: &AssetJudge, speed: Option<ShaftSpeed>) -> Running 
     let state = match judge.running.state() {
         Operating::Unknown => RunState::Unknown,
         Operating::Stopped => RunState::Stopped,
+        Operating::Starting => RunState::Starting,
         Operating::Running => RunState::Running,
+        Operating::Coasting => RunState::Coasting,
     };
     let (rpm, rpm_quality) = speed.map_or((None, Quality::Missing), told_speed);
     Running {
@@ -157,7 +160,7 @@ pub(super) fn watch_event(
     context: Context<'_>,
     index: usize,
     reading: &Reading,
-    change: Change,
+    Turn { change, armed }: Turn,
     id: Id,
 ) -> Event {
     let plan = &context.plan.spec().watches[index];
@@ -167,6 +170,7 @@ pub(super) fn watch_event(
     let (transition, kind) = match change {
         Change::Raised(_) => (Transition::Raised, State::Unack),
         Change::Worsened => (Transition::Worsened, State::Unack),
+        Change::Reraised => (Transition::Reraised, State::Unack),
         Change::Eased => (Transition::Eased, State::Unack),
         Change::Cleared => (Transition::Cleared, State::Norm),
     };
@@ -176,11 +180,13 @@ pub(super) fn watch_event(
         (_, Severity::Danger) => spec.limits.danger().or(spec.limits.alert()),
         _ => spec.limits.alert().or(spec.limits.danger()),
     };
+    let limit = armed.map_or(limit.map(|limit| limit.value()), |armed| Some(armed.limit));
     let account = Account {
         context,
         plan,
         reading,
-        limit: limit.map(|limit| limit.value()),
+        limit,
+        armed,
         change,
         severity,
     };
@@ -198,12 +204,15 @@ pub(super) fn watch_event(
         point: Some(context.plan.spec().points[spec.point].id().clone()),
         watch: Some(plan.full_name().into()),
         value: Some(account::value(&account)),
-        limit: limit.map(|limit| Limit {
-            value: limit.value(),
+        limit: limit.map(|value| Limit {
+            value,
             unit: spec.quantity.unit().into(),
         }),
         since,
-        readings: state.readings(change),
+        readings: match armed {
+            Some(_) => state.armed_readings(),
+            None => state.readings(change),
+        },
         lines: account::lines(&account),
         also: account::also(&account),
         against: account::against(&account),

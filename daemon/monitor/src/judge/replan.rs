@@ -2,7 +2,7 @@
 
 use alloc::vec::Vec;
 
-use super::{AssetJudge, Context, Judging, Tally, message, sensor::SensorState, watch::WatchState};
+use super::{AssetJudge, Context, Tally, message, sensor::SensorState, watch::WatchState};
 use crate::{
     action::Action,
     plan::{AssetPlan, BandPlan, PointPlan, WatchPlan},
@@ -62,9 +62,6 @@ impl AssetJudge {
         };
         self.sensors = places.iter().map(sensor).collect();
         self.tallies = alloc::vec![Tally::default(); places.len()];
-        if matches!(self.judging, Judging::Resuming { .. }) && !self.any_open() {
-            self.judging = Judging::On;
-        }
         self.changed = true;
     }
 

@@ -1,11 +1,14 @@
-//! Whether a machine runs: by its speed when that is fresh, else by the level at its points.
+//! What a machine is doing: by its run signal when that is fresh, else by its speed, else by the level at its points.
+//!
+//! In: believed speeds ([`Trend`]), the run signal, levels; signal time. Out: the operating state and its beginning.
+//! A machine starts when it leaves standstill or its speed rises, and coasts when its speed falls or has left the
+//! range it runs in; either ends when the speed has held still as long as a reading lasts. The level alone tells
+//! neither: a ramp is not seen in it.
 
-use alloc::vec::Vec;
-
+use super::trend::{Course, Report, Trend, WINDOW};
 use crate::{
-    plan::{AssetPlan, RunningRule},
-    reading::ShaftSpeed,
-    time::{SignalTime, Span},
+    plan::{AssetSpec, RunningRule},
+    time::{Arrival, SignalTime, Span},
 };
 
 /// What a machine is doing.
@@ -16,94 +19,29 @@ pub enum Operating {
     Unknown,
     /// It stands still.
     Stopped,
+    /// Its speed rises, from standstill or to a higher one.
+    Starting,
     /// It runs.
     Running,
+    /// Its speed falls, to standstill or to a lower one.
+    Coasting,
 }
 
 /// A level below this share of the running level means stopped. Common practice, no source.
 const STOPPED_SHARE: f64 = 0.7;
-/// Speeds that differ by more than this share of their mean within a reading are moving. Common practice, no source.
-const SPEED_MOVING_SHARE: f64 = 0.03;
-/// Speeds kept; at one a second a reading of 2 min is covered.
-const SPEEDS_KEPT: usize = 128;
-
-/// The reported speeds of one asset, newest last.
-#[derive(Debug, Clone, PartialEq, Default)]
-pub struct SpeedTrack {
-    reports: Vec<(SignalTime, f64)>,
-}
-
-impl SpeedTrack {
-    /// Takes in one report, r/min; one older than what is there is put in its place. `true` when it is the newest.
-    pub fn report(&mut self, at: SignalTime, rpm: f64) -> bool {
-        let place = self.reports.partition_point(|(earlier, _)| *earlier <= at);
-        let newest = place == self.reports.len();
-        if place > 0 && self.reports[place - 1] == (at, rpm) {
-            return newest;
-        }
-        if self.reports.len() == SPEEDS_KEPT {
-            if place == 0 {
-                return newest;
-            }
-            self.reports.remove(0);
-            self.reports.insert(place - 1, (at, rpm));
-        } else {
-            self.reports.insert(place, (at, rpm));
-        }
-        newest
-    }
-
-    /// Moves all reports to `back` earlier: the clock they were made by was set back.
-    pub fn set_back(&mut self, back: Span) {
-        for (at, _) in &mut self.reports {
-            *at = at.minus(back);
-        }
-    }
-
-    /// The newest report, if not older than `valid` at `now`.
-    pub fn latest(&self, now: SignalTime, valid: Span) -> Option<f64> {
-        let (at, rpm) = *self.reports.last()?;
-        (now.since(at) <= valid).then_some(rpm)
-    }
-
-    /// The latest report at or before `at`, if not older than `valid`.
-    pub fn fresh(&self, at: SignalTime, valid: Span) -> Option<f64> {
-        let place = self.reports.partition_point(|(earlier, _)| *earlier <= at);
-        let (reported, rpm) = *self.reports.get(place.checked_sub(1)?)?;
-        (at.since(reported) <= valid).then_some(rpm)
-    }
-
-    /// The speed that stands for `start` to `end`, and whether it moved in between.
-    ///
-    /// The mean of the reports in that time; without one, the last fresh report; else the nominal speed.
-    pub fn over(&self, start: SignalTime, end: SignalTime, plan: &AssetPlan) -> (ShaftSpeed, bool) {
-        let from = self.reports.partition_point(|(at, _)| *at < start);
-        let to = self.reports.partition_point(|(at, _)| *at <= end);
-        let within = self.reports.get(from..to).unwrap_or_default();
-        let before = self.fresh(start, plan.spec().running.speed_valid);
-        if within.is_empty() {
-            return match before {
-                Some(rpm) => (ShaftSpeed::Reported(rpm), false),
-                None => (ShaftSpeed::Nominal(plan.spec().speed.nominal), false),
-            };
-        }
-        let mean = within.iter().map(|(_, rpm)| rpm).sum::<f64>() / within.len() as f64;
-        let all = within.iter().map(|(_, rpm)| *rpm).chain(before);
-        let (low, high) = all.fold((f64::INFINITY, 0.0f64), |(low, high), rpm| {
-            (low.min(rpm), high.max(rpm))
-        });
-        (
-            ShaftSpeed::Reported(mean),
-            high - low > SPEED_MOVING_SHARE * mean,
-        )
-    }
-}
+/// Below this share of the lowest speed it does not run yet, or no more. Common practice, no source.
+const IN_RANGE_SHARE: f64 = 0.9;
+/// Below that range a speed must hold still for at least so long: what coasts slowly does not.
+const BELOW_RANGE_HOLDS: Span = Span::from_secs(60);
 
 /// The operating state of one asset.
 #[derive(Debug, Clone, PartialEq, Default)]
 pub(super) struct RunningState {
     state: Operating,
     since: Option<SignalTime>,
+    /// What it was doing before, and since when.
+    before: Option<(Operating, SignalTime)>,
+    trend: Trend,
 }
 
 impl RunningState {
@@ -117,41 +55,129 @@ impl RunningState {
         self.since
     }
 
-    /// Whether it ran from `start` on without a break until now.
+    /// The speed believed last, r/min, if not older than `valid` at `now`.
+    pub(super) fn rpm(&self, now: SignalTime, valid: Span) -> Option<f64> {
+        let believed = self.trend.believed()?;
+        (now.since(believed.at) <= valid).then_some(believed.rpm)
+    }
+
+    /// Whether it surely ran from `start` on without a break until now.
     pub(super) fn ran_from(&self, start: SignalTime) -> bool {
-        self.state == Operating::Running && self.since.is_some_and(|since| since <= start)
+        self.state == Operating::Running
+            && self.since.is_some_and(|since| since <= start)
+            && !self.trend.unsure()
     }
 
-    /// Moves its beginning to `back` earlier: the clock it was told by was set back.
-    pub(super) fn set_back(&mut self, back: Span) {
+    /// The part of `start` to `end` in which it was starting or coasting: the present state, or a start just over.
+    pub(super) fn changing(
+        &self,
+        start: SignalTime,
+        end: SignalTime,
+    ) -> Option<(Operating, SignalTime, SignalTime)> {
+        let since = self.since?;
+        let (state, from, to) = match (self.state, self.before) {
+            (Operating::Starting | Operating::Coasting, _) => (self.state, since, end),
+            (Operating::Running, Some((Operating::Starting, from))) => {
+                (Operating::Starting, from, since)
+            }
+            _ => return None,
+        };
+        let (from, to) = (from.max(start), to.min(end));
+        (from < to).then_some((state, from, to))
+    }
+
+    /// Our clock was set, `forward` or `back`: what was told by clocks that follow it moves back with it.
+    pub(super) fn wall_clock_set(&mut self, forward: Span, back: Span) {
         self.since = self.since.map(|since| since.minus(back));
+        self.before = self.before.map(|(state, since)| (state, since.minus(back)));
+        self.trend.wall_clock_set(forward, back);
     }
 
-    /// A speed was reported; `true` when the state changed by it.
-    pub(super) fn by_speed(&mut self, rule: &RunningRule, at: SignalTime, rpm: f64) -> bool {
-        self.turn(
-            if rpm >= rule.from_rpm && rpm > 0.0 {
-                Operating::Running
-            } else {
-                Operating::Stopped
-            },
-            at,
-        )
+    /// A speed newer than all before was reported; `signal` is what a fresh run signal says. `true` when the state
+    /// changed by it.
+    pub(super) fn speed(
+        &mut self,
+        spec: &AssetSpec,
+        report: Report,
+        arrival: Arrival,
+        signal: Option<bool>,
+    ) -> bool {
+        let RunningRule {
+            from_rpm,
+            speed_valid,
+            ..
+        } = spec.running;
+        let believed = self.trend.report(report, arrival, from_rpm, speed_valid);
+        let mut changed = false;
+        for report in believed.into_iter().flatten() {
+            changed |= self.believe(spec, report, signal);
+        }
+        changed
+    }
+
+    /// When a report is believed because no other came.
+    pub(super) fn due(&self) -> Option<Arrival> {
+        self.trend.due()
+    }
+
+    /// Believes the report that was due by `now`; `true` when the state changed by it.
+    pub(super) fn overdue(
+        &mut self,
+        spec: &AssetSpec,
+        now: Arrival,
+        signal: impl Fn(SignalTime) -> Option<bool>,
+    ) -> bool {
+        let report = self.trend.overdue(now);
+        report.is_some_and(|report| self.believe(spec, report, signal(report.at)))
     }
 
     /// The run signal was reported; `true` when the state changed by it.
-    pub(super) fn by_signal(&mut self, at: SignalTime, value: f64) -> bool {
-        self.turn(
-            if value >= 0.5 {
-                Operating::Running
-            } else {
-                Operating::Stopped
-            },
-            at,
-        )
+    ///
+    /// It rises from standstill, or is seen for the first time and nothing else tells that the machine runs already:
+    /// a start, since a ramp may be unseen.
+    pub(super) fn by_signal(&mut self, spec: &AssetSpec, at: SignalTime, runs: bool) -> bool {
+        if !runs {
+            return self.turn(Operating::Stopped, at);
+        }
+        match self.state {
+            Operating::Unknown | Operating::Stopped => self.turn(Operating::Starting, at),
+            Operating::Starting | Operating::Running | Operating::Coasting => {
+                self.settle(spec, at, Some(true)).unwrap_or_default()
+            }
+        }
     }
 
-    /// A level was read and no fresh speed is known, mm/s rms; `true` when the state changed by it.
+    /// Time has come to `now`, the end of a reading: what has stood or held long enough counts.
+    ///
+    /// `Some(true)` when the state changed by it, `None` when neither run signal nor speed is fresh.
+    pub(super) fn settle(
+        &mut self,
+        spec: &AssetSpec,
+        now: SignalTime,
+        signal: Option<bool>,
+    ) -> Option<bool> {
+        let mut changed = false;
+        if let Some(report) = self.trend.stood(now) {
+            changed = self.believe(spec, report, signal);
+        }
+        let valid = spec.running.speed_valid;
+        let fresh = self
+            .trend
+            .believed()
+            .filter(|report| now.since(report.at) <= valid);
+        match fresh {
+            Some(_) if self.trend.unsure() || self.trend.adrift() => {}
+            Some(report) => changed |= self.by_speed(spec, report.rpm, now, signal),
+            None if signal == Some(true) => changed |= self.by_signal_alone(spec, now),
+            None if signal.is_none() => return None,
+            None => {}
+        }
+        Some(changed)
+    }
+
+    /// A level was read and nothing better is known, mm/s rms; `true` when the state changed by it.
+    ///
+    /// Between the borders it stays as it was; what was starting runs, what was coasting stands.
     pub(super) fn by_level(
         &mut self,
         rule: &RunningRule,
@@ -159,18 +185,86 @@ impl RunningState {
         velocity_rms: f64,
     ) -> bool {
         if velocity_rms >= rule.from_mm_s {
-            self.turn(Operating::Running, at)
-        } else if velocity_rms < STOPPED_SHARE * rule.from_mm_s || self.state == Operating::Unknown
-        {
-            self.turn(Operating::Stopped, at)
+            return self.turn(Operating::Running, at);
+        }
+        if velocity_rms < STOPPED_SHARE * rule.from_mm_s {
+            return self.turn(Operating::Stopped, at);
+        }
+        match self.state {
+            Operating::Unknown | Operating::Coasting => self.turn(Operating::Stopped, at),
+            Operating::Starting => self.turn(Operating::Running, at),
+            Operating::Stopped | Operating::Running => false,
+        }
+    }
+
+    fn believe(&mut self, spec: &AssetSpec, report: Report, signal: Option<bool>) -> bool {
+        self.trend.believe(report);
+        self.by_speed(spec, report.rpm, report.at, signal)
+    }
+
+    fn by_speed(
+        &mut self,
+        spec: &AssetSpec,
+        rpm: f64,
+        now: SignalTime,
+        signal: Option<bool>,
+    ) -> bool {
+        let turns = rpm >= spec.running.from_rpm && rpm > 0.0;
+        match (signal, turns) {
+            (Some(false), _) => return false,
+            (Some(true), false) => return self.by_signal_alone(spec, now),
+            (None, false) => return self.turn(Operating::Stopped, now),
+            (Some(true) | None, true) => {}
+        }
+        let below_range = rpm < IN_RANGE_SHARE * spec.speed.lowest;
+        let least = if below_range {
+            BELOW_RANGE_HOLDS
         } else {
-            false
+            WINDOW
+        };
+        let from = match self.state {
+            Operating::Starting | Operating::Coasting => self.since,
+            Operating::Unknown | Operating::Stopped | Operating::Running => None,
+        };
+        let from = from.unwrap_or(SignalTime::from_ns(i64::MIN));
+        let held = self.trend.held(from, now, spec.reading_every.max(least));
+        match (self.state, held, self.trend.course()) {
+            (Operating::Unknown, ..) if below_range => self.turn(Operating::Starting, now),
+            (Operating::Unknown, ..) => self.turn(Operating::Running, now),
+            (Operating::Stopped, ..) => self.turn(Operating::Starting, now),
+            (Operating::Starting | Operating::Coasting, Some(held), _) => {
+                self.turn(Operating::Running, held)
+            }
+            // What has held still for that long neither rises nor falls, whatever came before it.
+            (Operating::Running, Some(_), _) => false,
+            (Operating::Running, None, Course::Steady) if below_range => {
+                self.turn(Operating::Coasting, now)
+            }
+            (_, _, Course::Rising) => self.turn(Operating::Starting, now),
+            (_, _, Course::Falling) => self.turn(Operating::Coasting, now),
+            (_, _, Course::Steady) => false,
+        }
+    }
+
+    /// The run signal says it runs and no speed tells how: what changes does so for the time the plan states.
+    fn by_signal_alone(&mut self, spec: &AssetSpec, now: SignalTime) -> bool {
+        let over = self
+            .since
+            .map(|since| since.plus(spec.starting.signal_for))
+            .filter(|over| *over <= now);
+        match (self.state, over) {
+            (Operating::Unknown | Operating::Stopped, _) => self.turn(Operating::Starting, now),
+            (Operating::Starting | Operating::Coasting, Some(over)) => {
+                self.turn(Operating::Running, over)
+            }
+            (Operating::Starting | Operating::Coasting | Operating::Running, _) => false,
         }
     }
 
     fn turn(&mut self, to: Operating, at: SignalTime) -> bool {
         let changed = self.state != to;
         if changed {
+            self.before = self.since.map(|since| (self.state, since));
             self.state = to;
             self.since = Some(at);
         }
@@ -179,50 +273,4 @@ impl RunningState {
 }
 
 #[cfg(test)]
-mod tests {
-    use super::{Operating, RunningState, SpeedTrack};
-    use crate::{
-        plan::RunningRule,
-        time::{SignalTime, Span},
-    };
-
-    const RULE: RunningRule = RunningRule {
-        from_rpm: 300.0,
-        from_mm_s: 1.0,
-        speed_valid: Span::from_secs(60),
-    };
-
-    fn at(s: i64) -> SignalTime {
-        SignalTime::from_ns(s * 1_000_000_000)
-    }
-
-    #[test]
-    fn a_level_between_the_two_borders_leaves_the_state_as_it_was() {
-        let mut running = RunningState::default();
-        assert!(running.by_level(&RULE, at(1), 1.2));
-        assert!(!running.by_level(&RULE, at(2), 0.8));
-        assert_eq!(running.state(), Operating::Running);
-        assert!(running.by_level(&RULE, at(3), 0.6));
-        assert!(!running.by_level(&RULE, at(4), 0.8));
-        assert_eq!(running.state(), Operating::Stopped);
-        assert!(!running.ran_from(at(4)));
-    }
-
-    #[test]
-    fn a_speed_report_goes_stale() {
-        let mut speeds = SpeedTrack::default();
-        assert!(speeds.report(at(10), 1480.0));
-        assert_eq!(speeds.fresh(at(70), Span::from_secs(60)), Some(1480.0));
-        assert_eq!(speeds.fresh(at(71), Span::from_secs(60)), None);
-        assert_eq!(speeds.fresh(at(9), Span::from_secs(60)), None);
-    }
-
-    #[test]
-    fn a_late_report_is_put_in_its_place() {
-        let mut speeds = SpeedTrack::default();
-        let newest = [30, 10, 20, 20].map(|s| speeds.report(at(s), s as f64));
-        assert_eq!(newest, [true, false, false, false]);
-        assert_eq!(speeds.fresh(at(25), Span::from_secs(60)), Some(20.0));
-        assert_eq!(speeds.reports.len(), 3);
-    }
-}
+mod tests;

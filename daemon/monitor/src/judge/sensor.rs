@@ -147,7 +147,12 @@ impl SensorState {
         let blames = |doubt: &Doubt| doubt.is_instrument() && *doubt != Doubt::Short;
         let short = reading.doubts.has(Doubt::Short).then_some(Doubt::Short);
         match reading.doubts.iter().find(blames).or(short) {
-            Some(Doubt::Flat) if stands_still => None,
+            Some(Doubt::Flat) if stands_still => {
+                // It may have stood already when the flat signal began, before the stop was known.
+                let flat = |doubtful: &Doubtful| doubtful.cause == Cause::Doubtful(Doubt::Flat);
+                self.doubtful = self.doubtful.filter(|doubtful| !flat(doubtful));
+                None
+            }
             Some(Doubt::Short) if our_gap => None,
             Some(doubt) => {
                 self.good_since = None;

@@ -8,7 +8,7 @@ use humward_wire::out::{
 };
 
 use super::{
-    AssetJudge, Context, Judging, Operating,
+    AssetJudge, Context, Operating,
     message::{running, sensor_watch, told_speed},
     words,
 };
@@ -73,16 +73,17 @@ pub(super) fn status(judge: &AssetJudge, context: Context<'_>) -> Status {
 }
 
 fn open(judge: &AssetJudge, context: Context<'_>) -> Vec<Open> {
-    let state = match judge.judging {
-        Judging::On => State::Unack,
-        Judging::Suspended | Judging::Resuming { .. } => State::Dsupr,
-    };
     let machine = judge
         .watches
         .iter()
         .zip(&context.plan.spec().watches)
         .filter_map(|(watch, plan)| {
             let open = watch.occurrence()?;
+            let state = if open.held {
+                State::Dsupr
+            } else {
+                State::Unack
+            };
             Some(Open {
                 occurrence: open.id.clone()?,
                 watch: plan.full_name().into(),
@@ -119,7 +120,7 @@ fn quality(judge: &AssetJudge, context: Context<'_>, point: usize) -> Quality {
     match &judge.latest[point] {
         None => Quality::Missing,
         Some(reading) if is_stale(judge, context, reading) => Quality::Stale,
-        Some(reading) if reading.doubts.only_clipped() => Quality::LowerBound,
+        Some(reading) if reading.doubts.is_a_bound() => Quality::LowerBound,
         Some(reading) if reading.doubts.iter().any(Doubt::is_instrument) => Quality::Doubtful,
         Some(_) if !judge.sensors[point].good() => Quality::Doubtful,
         Some(_) => Quality::Good,
@@ -208,10 +209,10 @@ fn last_running(judge: &AssetJudge, context: Context<'_>) -> Option<LastRunning>
 
 /// Watches whose answer is old: their point has had no reading they could be judged on.
 ///
-/// A machine that stands still gives no answers; then any reading will do, the status says that it stands.
+/// A machine that does not run steadily gives no answers; then any reading will do, the status says what it does.
 fn stale(judge: &AssetJudge, context: Context<'_>) -> Vec<String> {
     let answers = match judge.running.state() {
-        Operating::Stopped => &judge.latest,
+        Operating::Stopped | Operating::Starting | Operating::Coasting => &judge.latest,
         Operating::Unknown | Operating::Running => &judge.last_running,
     };
     let watches = context.plan.spec().watches.iter();
@@ -224,12 +225,12 @@ fn stale(judge: &AssetJudge, context: Context<'_>) -> Vec<String> {
         .collect()
 }
 
-/// The speed now: the one reported last while it is fresh, else the nominal one of a machine that runs.
+/// The speed now: the one believed last while it is fresh, else the nominal one of a machine that runs.
 fn speed(judge: &AssetJudge, context: Context<'_>) -> Option<ShaftSpeed> {
     let spec = context.plan.spec();
     let now = context.arrival.as_signal_time();
     let runs = judge.running.state() == Operating::Running;
     let nominal = runs.then_some(ShaftSpeed::Nominal(spec.speed.nominal));
-    let latest = judge.speeds.latest(now, spec.running.speed_valid);
-    latest.map(ShaftSpeed::Reported).or(nominal)
+    let believed = judge.running.rpm(now, spec.running.speed_valid);
+    believed.map(ShaftSpeed::Reported).or(nominal)
 }

@@ -1,21 +1,22 @@
 //! Whether the machine runs, and what a stop does to what stands open: it is held, and goes on afterwards.
 //!
-//! In: speeds and levels. Out: one event for the asset when judging pauses, one when it goes on. Nothing rings by it.
+//! In: speeds and levels. Out: one event for the asset when judging pauses and something is open, one when it goes
+//! on. Nothing rings by it, and with nothing open nothing is told but the state.
 
 use alloc::vec::Vec;
 
-use super::{AssetJudge, Context, Judging, Operating, message};
+use super::{AssetJudge, Context, Judging, Operating, message, watch::WatchState};
 use crate::{
     action::Action,
     plan::Measure,
     reading::{Doubt, Reading},
 };
 
-/// Judged readings after a stop before what was suspended goes on. Common practice, no source.
+/// With which judged reading after a stop or start judging goes on. Common practice, no source.
 const RESUME_READINGS: u8 = 2;
 
 impl AssetJudge {
-    /// Tells from the level whether the machine runs, where no fresh speed or run signal does.
+    /// Lets the state keep up with a reading: by run signal and speed, else by the level.
     ///
     /// The asset's strongest velocity counts: this reading's and that of every other point of about the same time.
     pub(super) fn level(
@@ -25,21 +26,18 @@ impl AssetJudge {
         reading: &Reading,
         actions: &mut Vec<Action>,
     ) {
-        let rule = &context.plan.spec().running;
-        let Some((velocity, _)) = reading.velocity else {
-            return;
-        };
-        let believable = |reading: &Reading| !reading.doubts.iter().any(Doubt::is_instrument);
-        if !believable(reading) || self.run_signal_fresh(context, reading.end) {
-            return;
-        }
-        if let Some(rpm) = self.speeds.fresh(reading.end, rule.speed_valid) {
-            // It decided when it was reported, unless a run signal that has gone stale since stood before it.
-            if self.running.by_speed(rule, reading.end, rpm) {
+        let spec = context.plan.spec();
+        let signal = self.run_signal(context, reading.end);
+        if let Some(changed) = self.running.settle(spec, reading.end, signal) {
+            if changed {
                 self.running_changed(context, actions);
             }
             return;
         }
+        let believable = |reading: &Reading| !reading.doubts.iter().any(Doubt::is_instrument);
+        let Some((velocity, _)) = reading.velocity.filter(|_| believable(reading)) else {
+            return;
+        };
         let recent = reading.end.minus(reading.length());
         let others = self
             .latest
@@ -51,37 +49,39 @@ impl AssetJudge {
         let strongest = others
             .filter_map(|other| other.value(Measure::VelocityRms))
             .fold(velocity, f64::max);
-        if self.running.by_level(rule, reading.end, strongest) {
+        if self.running.by_level(&spec.running, reading.end, strongest) {
             self.running_changed(context, actions);
         }
     }
 
+    /// The operating state has changed: what is not held and no longer judged is held, told once for the asset.
     pub(super) fn running_changed(&mut self, context: Context<'_>, actions: &mut Vec<Action>) {
         self.changed = true;
         let runs = self.running.state() == Operating::Running;
-        match self.judging {
-            Judging::On | Judging::Resuming { .. } if !runs => {
-                let told = self.judging != Judging::On;
-                self.judging = Judging::Suspended;
-                if !told && self.any_open() {
-                    self.asset_event(context, message::AssetChange::Suspended, actions);
-                }
+        if !runs {
+            self.judging = Judging::Suspended;
+            for watch in &mut self.watches {
+                watch.disarm();
             }
-            Judging::Suspended if runs => {
-                self.judging = if self.any_open() {
-                    Judging::Resuming {
-                        left: RESUME_READINGS,
-                        until: None,
-                    }
-                } else {
-                    Judging::On
-                };
+            if self.watches.iter().any(WatchState::rings) {
+                self.hold_all(true);
+                self.asset_event(context, message::AssetChange::Suspended, actions);
             }
-            Judging::On | Judging::Resuming { .. } | Judging::Suspended => {}
+        } else if self.judging == Judging::Suspended {
+            self.judging = Judging::Resuming {
+                left: RESUME_READINGS,
+                until: None,
+            };
         }
     }
 
-    /// Counts a judged reading towards going on after a stop; `true` when watches are judged.
+    fn hold_all(&mut self, held: bool) {
+        for watch in &mut self.watches {
+            watch.hold(held);
+        }
+    }
+
+    /// Counts a judged reading towards going on after a stop or start; `true` when watches are judged.
     ///
     /// Readings of several points that end together are one.
     pub(super) fn judging_goes_on(
@@ -105,16 +105,12 @@ impl AssetJudge {
             }
             Judging::Resuming { .. } => {
                 self.judging = Judging::On;
-                self.asset_event(context, message::AssetChange::Resumed, actions);
+                if self.watches.iter().any(WatchState::is_held) {
+                    self.hold_all(false);
+                    self.asset_event(context, message::AssetChange::Resumed, actions);
+                }
                 true
             }
         }
-    }
-
-    /// Whether a machine watch has an open occurrence.
-    pub(super) fn any_open(&self) -> bool {
-        self.watches
-            .iter()
-            .any(|watch| watch.occurrence().is_some())
     }
 }

@@ -7,7 +7,7 @@ use humward_wire::{id::Id, out::Severity};
 
 use crate::{
     judge::counter::Counter,
-    plan::{Limit, Measure, WatchPlan},
+    plan::{Limit, Measure, Persistence, WatchPlan},
     reading::{Doubt, Reading},
     time::SignalTime,
 };
@@ -19,6 +19,8 @@ pub(super) enum Change {
     Raised(Severity),
     /// From alert to danger.
     Worsened,
+    /// Danger that was held is there again while the machine starts.
+    Reraised,
     /// From danger back to alert.
     Eased,
     /// Back to normal: the occurrence is closed.
@@ -34,6 +36,8 @@ pub(super) struct Occurrence {
     pub(super) since: SignalTime,
     /// The last value before the condition began, in the measure's unit; `None` when it held from the first reading on.
     pub(super) before: Option<f64>,
+    /// Whether it is held: the machine did not run since, or has only just begun to.
+    pub(super) held: bool,
     /// High-band acceleration when it was raised, m/s2 rms: what must not have risen for a bearing to be back.
     high_band_at_raise: Option<f64>,
 }
@@ -48,6 +52,8 @@ pub(super) struct WatchState {
     danger: Counter,
     ease: Counter,
     clear: Counter,
+    /// Over the limit armed while the machine starts.
+    armed: Counter,
 }
 
 /// How far the high band may stand above its value at the raise for a bearing to count as back: 25 %,
@@ -64,6 +70,7 @@ impl Default for WatchState {
             danger: Counter::default(),
             ease: Counter::default(),
             clear: Counter::default(),
+            armed: Counter::default(),
         }
     }
 }
@@ -79,6 +86,28 @@ impl WatchState {
         self.occurrence.as_ref()
     }
 
+    /// Holds the open occurrence, or lets it go on.
+    pub(super) const fn hold(&mut self, held: bool) {
+        if let Some(open) = &mut self.occurrence {
+            open.held = held;
+        }
+    }
+
+    /// Whether an occurrence is open and held.
+    pub(super) fn is_held(&self) -> bool {
+        self.occurrence.as_ref().is_some_and(|open| open.held)
+    }
+
+    /// Whether an occurrence is open and not held.
+    pub(super) fn rings(&self) -> bool {
+        self.occurrence.as_ref().is_some_and(|open| !open.held)
+    }
+
+    /// Forgets how long the armed limit has been passed: another start or stop begins.
+    pub(super) fn disarm(&mut self) {
+        self.armed.reset();
+    }
+
     /// Gives the open occurrence the id of the event that raised it.
     pub(super) fn name_occurrence(&mut self, id: Id) {
         if let Some(open) = &mut self.occurrence {
@@ -92,6 +121,7 @@ impl WatchState {
         self.danger.reset();
         self.ease.reset();
         self.clear.reset();
+        self.armed.reset();
     }
 
     /// Closes whatever is open, because its watch or asset is no longer there.
@@ -106,9 +136,42 @@ impl WatchState {
         match change {
             Change::Raised(Severity::Danger) | Change::Worsened => self.danger.held(),
             Change::Raised(_) => self.alert.held(),
+            Change::Reraised => self.armed.held(),
             Change::Eased => self.ease.held(),
             Change::Cleared => self.clear.held(),
         }
+    }
+
+    /// Readings on which the armed limit has been passed.
+    pub(super) const fn armed_readings(&self) -> u32 {
+        self.armed.held()
+    }
+
+    /// Judges the part `from` to `to` of a reading by the armed limit, which it passes or not.
+    pub(super) fn judge_armed(
+        &mut self,
+        passed: bool,
+        reading: &Reading,
+        from: SignalTime,
+        to: SignalTime,
+        after: Persistence,
+    ) -> Option<Change> {
+        if !self.armed.feed_part(passed, from, to, after) {
+            return None;
+        }
+        let change = match self.severity {
+            Severity::None => Change::Raised(Severity::Danger),
+            Severity::Alert => Change::Worsened,
+            Severity::Danger if self.is_held() => Change::Reraised,
+            Severity::Danger => return None,
+        };
+        self.become_severe(
+            Severity::Danger,
+            self.armed.since().unwrap_or(from),
+            reading,
+        );
+        self.hold(false);
+        Some(change)
     }
 
     /// Judges one reading of the watch's point.
@@ -176,18 +239,24 @@ impl WatchState {
         } else {
             Change::Worsened
         };
-        self.severity = target;
+        let since = self.alert.since().or(since).unwrap_or(reading.start);
+        self.become_severe(target, since, reading);
+        Some(change)
+    }
+
+    fn become_severe(&mut self, severity: Severity, since: SignalTime, reading: &Reading) {
+        self.severity = severity;
         self.ease.reset();
         self.clear.reset();
         if self.occurrence.is_none() {
             self.occurrence = Some(Occurrence {
                 id: None,
-                since: self.alert.since().or(since).unwrap_or(reading.start),
+                since,
                 before: self.quiet,
+                held: false,
                 high_band_at_raise: reading.high_band_rms,
             });
         }
-        Some(change)
     }
 
     fn fall(

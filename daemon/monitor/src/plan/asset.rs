@@ -5,14 +5,14 @@ use alloc::{format, string::String, vec::Vec};
 use humward_wire::id::Id;
 
 use super::{
-    PointPlan, WatchPlan, ZoneLimits,
+    Measure, PointPlan, WatchPlan, WatchSpec, ZoneLimits,
     fault::{Code, Part, PlanFault},
 };
 use crate::time::Span;
 
 /// How it is known that a machine runs.
 ///
-/// A fresh speed decides first: above `from_rpm` it runs. Without one the level decides: the asset's
+/// A fresh speed decides first: above `from_rpm` it turns, and runs once that has held still. Without one the level decides: the asset's
 /// strongest velocity at or above `from_mm_s` means running, below 0.7 of that stopped, between them as it was.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct RunningRule {
@@ -22,6 +22,46 @@ pub struct RunningRule {
     pub from_mm_s: f64,
     /// How long a reported speed stays fresh.
     pub speed_valid: Span,
+}
+
+/// How danger is watched for while a machine starts.
+///
+/// Running limits do not hold then; a watch of velocity, acceleration or high band in rms that has a danger limit
+/// stays armed at `factor` times it. Two to three times for 5 s to 10 s is common practice, from memory: API 670
+/// multiplies its limits by 2 or 3 while a machine runs up.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct StartingRule {
+    /// The armed limit as a multiple of the danger limit, 2 to 3.
+    pub factor: f64,
+    /// How long it must be passed, 5 s to 30 s.
+    pub after: Span,
+    /// How long a start lasts after the run signal rises while no speed is reported, 1 s to 10 min.
+    pub signal_for: Span,
+}
+
+impl StartingRule {
+    /// Danger at three times its limit for 10 s; a start whose speed nobody reports lasts 30 s.
+    pub const USUAL: Self = Self {
+        factor: 3.0,
+        after: Span::from_secs(10),
+        signal_for: Span::from_secs(30),
+    };
+
+    /// The limit a watch is armed at, in its unit; `None` when it is not.
+    pub fn armed(&self, watch: &WatchSpec) -> Option<f64> {
+        let danger = watch.limits.danger()?;
+        match watch.measure {
+            Measure::VelocityRms | Measure::AccelerationRms | Measure::HighBandRms => {
+                Some(self.factor * danger.value())
+            }
+            Measure::VelocityPeak
+            | Measure::AccelerationPeak
+            | Measure::Crest
+            | Measure::Kurtosis
+            | Measure::Band(_)
+            | Measure::Bearing(_) => None,
+        }
+    }
 }
 
 /// The speeds a machine runs at, r/min.
@@ -48,6 +88,8 @@ pub struct AssetSpec {
     pub running: RunningRule,
     /// The process value that tells whether it runs: 0.5 or more means running. It comes before speed and level.
     pub run_signal: Option<Id>,
+    /// How danger is watched for while it starts.
+    pub starting: StartingRule,
     /// The zones velocity is told in.
     pub zones: Option<ZoneLimits>,
     /// Length of a reading; readings end on its absolute multiples.
@@ -116,7 +158,17 @@ impl AssetPlan {
                 "above 0 mm/s rms".into(),
             );
         }
+        if !(2.0..=3.0).contains(&spec.starting.factor) {
+            fault(
+                Code::OutOfRange,
+                "starting_factor",
+                format!("{}", spec.starting.factor),
+                "2 to 3 times danger".into(),
+            );
+        }
         let spans = [
+            ("starting_after", spec.starting.after, 5, 30),
+            ("starting_for", spec.starting.signal_for, 1, 600),
             ("reading_every", spec.reading_every, 1, 3600),
             ("status_every", spec.status_every, 1, 86_400),
             ("sensor_after", spec.sensor_after, 1, 30 * 86_400),

@@ -13,7 +13,7 @@ mod point;
 mod watch;
 mod zones;
 
-pub use asset::{AssetPlan, AssetSpec, GroupPlan, RunningRule, SpeedRange};
+pub use asset::{AssetPlan, AssetSpec, GroupPlan, RunningRule, SpeedRange, StartingRule};
 pub use fault::{Code, Part, PlanFault};
 pub use feasible::{
     LEAST_LINE_BINS, NOISE_MARGIN, acceleration_noise_ms2, band_hz, frame_for_line, race_order,

@@ -35,6 +35,8 @@ pub(crate) enum Episode {
     Refused(u8),
     /// The speed is reported, r/min.
     Speed(u16),
+    /// The speed goes from one to another, r/min, in so many seconds, reported each second; it vibrates, mm/s rms.
+    Ramp(u16, u16, u8, f64),
     /// We let blocks go.
     Gap,
     /// The link is lost for so many seconds.
@@ -52,6 +54,12 @@ pub(crate) fn story(most: usize) -> impl Strategy<Value = Vec<Episode>> {
         1 => (5u8..90).prop_map(Episode::Silent),
         1 => (5u8..90).prop_map(Episode::Refused),
         2 => prop_oneof![Just(0u16), Just(1482), Just(1900)].prop_map(Episode::Speed),
+        2 => (
+            prop_oneof![Just((0u16, 1482)), Just((1482, 0)), Just((1000, 1482)), Just((1482, 1000))],
+            10u8..40,
+            prop_oneof![0.1..3.0, 7.5..12.0, 22.0..30.0],
+        )
+            .prop_map(|((from, to), s, v)| Episode::Ramp(from, to, s, v)),
         1 => Just(Episode::Gap),
         1 => (5u8..90).prop_map(Episode::LinkLost),
         1 => (-200i16..200).prop_map(Episode::ClockStep),
@@ -133,6 +141,19 @@ pub(crate) fn inputs(story: &[Episode], jitter: f64) -> Vec<(Arrival, Input)> {
                 (Vec::new(), (0..s).map(refused).collect(), f64::from(s))
             }
             Episode::Speed(rpm) => single(speed(now, rpm)),
+            Episode::Ramp(from, to, s, velocity) => {
+                let vibration = Vibration {
+                    noise: 0.02,
+                    ..Vibration::sine(velocity)
+                };
+                let (from, to) = (f64::from(from), f64::from(to));
+                let reports = (0..s).map(|k| {
+                    let share = f64::from(k + 1) / f64::from(s);
+                    let rpm = (from + (to - from) * share) as u16;
+                    (f64::from(k), speed(now + f64::from(k), rpm))
+                });
+                (blocks(vibration, s), reports.collect(), f64::from(s))
+            }
             Episode::Gap => single(Input::Gap(Some(source()), GapCause::Shed, 2)),
             Episode::LinkLost(s) => {
                 let s = f64::from(s);
@@ -145,7 +166,9 @@ pub(crate) fn inputs(story: &[Episode], jitter: f64) -> Vec<(Arrival, Input)> {
             let block = block(&[vibration?], now + k, 1.0, RATE_HZ);
             Some((k + 1.0, Input::Block(source(), block)))
         });
-        for (k, (after, input)) in streams.chain(singles).enumerate() {
+        let mut all: Vec<(f64, Input)> = streams.chain(singles).collect();
+        all.sort_by(|(a, _), (b, _)| a.total_cmp(b));
+        for (k, (after, input)) in all.into_iter().enumerate() {
             let late = jitter * uniform((place * 1000 + k) as u64);
             last = last.max(ZERO_NS + ns(now + after + late) + offset);
             if let Input::ClockStep(by) = &input {

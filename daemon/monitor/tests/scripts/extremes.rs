@@ -114,6 +114,11 @@ fn settings(which: u8) -> Settings {
         "status 3600",
         reading,
         "speed_valid 30",
+        if which == 1 {
+            "run_signal flow"
+        } else {
+            "run_signal run"
+        },
         asset.as_str(),
         "point de \"the drive end bearing housing, horizontal, seen from the coupling side of it\" range 15 bearing 3.6 5.4 4.7 0.4 envelope 800 2400",
         "point nde \"non-drive end\" source de channel 1 count_per_g 100 band_orders 0.5 1.5",
@@ -129,6 +134,7 @@ fn any_input() -> impl Strategy<Value = Input> {
     let (a, b, c) = (asset.clone(), asset.clone(), asset);
     let deadlines = [
         DeadlineReason::ReadingOverdue,
+        DeadlineReason::SpeedStands,
         DeadlineReason::SensorOverdue,
         DeadlineReason::StatusDue,
         DeadlineReason::RecordingEnd,
@@ -138,7 +144,7 @@ fn any_input() -> impl Strategy<Value = Input> {
         3 => (prop::option::of(time()), number())
             .prop_map(move |(at, rpm)| Input::Speed(a.clone(), Speed { at, rpm, shaft: None })),
         1 => (prop::option::of(time()), number())
-            .prop_map(move |(at, value)| Input::Process(b.clone(), Process { at, name: id("flow"), value, unit: None })),
+            .prop_map(move |(at, value)| Input::Process(b.clone(), Process { at, name: id("run"), value, unit: None })),
         1 => (prop::sample::select(&Verb::ALL[..]), prop::option::of(time()))
             .prop_map(move |(verb, expires)| Input::Command(c.clone(), id("panel"), command(verb, expires))),
         1 => (any::<bool>(), any::<u64>()).prop_map(|(named, blocks)| {

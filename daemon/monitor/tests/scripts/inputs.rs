@@ -2,7 +2,7 @@
 //!
 //! Streams: `FROM-TO vibrate V [hz F] [noise N] [bursts HZ PEAK] [clip C] [mean M]`, `flat`; with `to`, `lag`,
 //! `jitter`, `at_once T` (all arrive then), `later T V` (V mm/s from second T on), `shift` (the sensor's clock is off), `rate`, `block`, `unit`, `seq`, `unstamped`, `second V` (a second
-//! channel). Moments: `speed R [shaft S]`, `process NAME VALUE`, `link up|lost`, `gap shed N`, `refuse REASON`, `clock_step S`,
+//! channel). Moments: `speed R [until R] [wander SHARE PERIOD] [noise SHARE] [shaft S]`, `process NAME VALUE`, `link up|lost`, `gap shed N`, `refuse REASON`, `clock_step S`,
 //! `command VERB ID`, `plan SETTING`, `restart`, `wait`, `wake` (a `wait` nobody
 //! attended), `end`. A moment given from-to repeats `every` so many seconds.
 
@@ -97,22 +97,36 @@ fn deeds(settings: &mut Settings, command: &Command) -> Vec<(f64, Deed)> {
     let moments = (0..count).map(|k| command.from + k as f64 * every);
     let mut made = Vec::new();
     for moment in moments {
-        made.push((moment + lag, deed(settings, words, moment, to)));
+        made.push((
+            moment + lag,
+            deed(settings, words, moment, command.from, to),
+        ));
     }
     made
 }
 
-fn deed(settings: &mut Settings, words: &Words, moment: f64, to: f64) -> Deed {
+/// The speed a command reports at a moment, r/min.
+fn rpm(words: &Words, moment: f64, from: f64, to: f64) -> f64 {
+    let first = words.number(1);
+    // `speed A until B`: in a straight line from the one, which is not told again, to the other.
+    let rpm = words.read::<f64>("until").map_or(first, |last| {
+        let every = words.read("every").unwrap_or(1.0);
+        first + (last - first) * ((moment + every - from) / (to - from)).min(1.0)
+    });
+    let wander = words.numbers("wander").map_or(0.0, |[share, period]| {
+        share * (std::f64::consts::TAU * moment / period).sin()
+    });
+    let noise: f64 = words.read("noise").unwrap_or(0.0);
+    let drawn = 2.0 * uniform((moment * 1000.0) as u64) - 1.0;
+    rpm * (1.0 + wander + noise * drawn)
+}
+
+fn deed(settings: &mut Settings, words: &Words, moment: f64, from: f64, to: f64) -> Deed {
     let (asset, source) = settings.target(words);
     let at = (!words.has("unstamped")).then_some(ZERO_NS + ns(moment));
     Deed::Step(match words.at(0) {
         "speed" => {
-            let rpm = words.number(1);
-            // `speed A until B`: from one speed to the other by the end of the command.
-            let rpm = words.read::<f64>("until").map_or(rpm, |last| {
-                let share = words.read("every").unwrap_or(1.0) / (to - moment);
-                rpm + (last - rpm) * share.min(1.0)
-            });
+            let rpm = rpm(words, moment, from, to);
             Input::Speed(
                 asset,
                 Speed {

@@ -18,4 +18,5 @@ mod language;
 mod properties;
 mod settings;
 mod signals;
+mod starts;
 mod told;

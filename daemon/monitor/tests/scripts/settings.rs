@@ -5,8 +5,8 @@ use std::sync::Arc;
 use humward_monitor::{
     plan::{
         AssetPlan, AssetSpec, BandPlan, BandSpec, Calibration, Edges, GroupPlan, Limits, Measure,
-        Persistence, PointPlan, PointSpec, Quantity, Race, RunningRule, SpeedRange, WatchPlan,
-        WatchSpec, ZoneLimits,
+        Persistence, PointPlan, PointSpec, Quantity, Race, RunningRule, SpeedRange, StartingRule,
+        WatchPlan, WatchSpec, ZoneLimits,
     },
     time::Span,
 };
@@ -53,6 +53,7 @@ impl Default for Settings {
                     speed_valid: Span::from_secs(3600),
                 },
                 run_signal: None,
+                starting: StartingRule::USUAL,
                 zones: None,
                 reading_every: Span::from_secs(10),
                 status_every: Span::from_secs(3600),
@@ -101,6 +102,13 @@ impl Settings {
             "running_from" => {
                 (common.running.from_rpm, common.running.from_mm_s) =
                     (words.number(1), words.number(2));
+            }
+            "starting" => {
+                common.starting = StartingRule {
+                    factor: words.number(1),
+                    after: span(2),
+                    signal_for: span(3),
+                };
             }
             "run_signal" => common.run_signal = Some(id(words.at(1))),
             "zones" => {

@@ -13,7 +13,7 @@ use humward_wire::{
 use super::{bare, event, header, severity_word};
 use crate::{
     judge::{
-        AssetJudge, Context, account,
+        AssetJudge, Context, Operating, account,
         sentence::{self, clock, two_digits},
         watch::WatchState,
         words,
@@ -55,19 +55,23 @@ pub(in crate::judge) fn asset_event(
         &format!("{open} open alarms are")
     };
     let severity = severity_word(worst);
+    let doing = match judge.running.state() {
+        Operating::Unknown | Operating::Stopped => "stopped",
+        Operating::Starting => "starting",
+        Operating::Running => "running",
+        Operating::Coasting => "coasting",
+    };
     let (transition, state, text) = match change {
         AssetChange::Suspended => {
             let place = sentence::place(&format!("{severity} held"), context.plan, None);
             let text = format!(
-                "{place}: stopped since {since}. {alarms} held, not ended; judging goes on when it runs again."
+                "{place}: {doing} since {since}. {alarms} held, not ended; judging goes on when it runs steadily again."
             );
             (Transition::Suspended, State::Dsupr, text)
         }
         AssetChange::Resumed => {
             let place = sentence::place(&format!("{severity} open"), context.plan, None);
-            let text = format!(
-                "{place}: running again since {since}. {alarms} judged again after the stop."
-            );
+            let text = format!("{place}: {doing} again since {since}. {alarms} judged again.");
             (Transition::Resumed, State::Unack, text)
         }
     };
@@ -91,7 +95,7 @@ pub(in crate::judge) fn held_alarm(
     let point = context.plan.spec().points[spec.point].spec();
     let now = Instant(context.arrival.ns());
     let (kind, word) = match change {
-        AssetChange::Suspended => (State::Dsupr, "held while the machine stands still"),
+        AssetChange::Suspended => (State::Dsupr, "held until the machine runs steadily again"),
         AssetChange::Resumed => (State::Unack, "judged again, the machine runs"),
     };
     let since = Instant(occurrence.since.ns());

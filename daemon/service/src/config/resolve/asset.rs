@@ -2,7 +2,7 @@
 
 use humward_monitor::plan::{
     AssetPlan, AssetSpec, Code as PlanCode, Part, PlanFault, PointPlan, RunningRule, SpeedRange,
-    WatchPlan, ZoneLimits,
+    StartingRule, WatchPlan, ZoneLimits,
 };
 use humward_wire::id::Id;
 
@@ -105,6 +105,7 @@ pub(crate) fn read<'t>(
         speed,
         running,
         run_signal: view.id("run_signal"),
+        starting: StartingRule::USUAL,
         zones: zones.clone(),
         reading_every,
         status_every,
