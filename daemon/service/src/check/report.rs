@@ -6,8 +6,8 @@
 use std::io::{self, Write};
 
 use humward_monitor::plan::{
-    AssetPlan, Edges, Measure, PointPlan, PointSpec, Quantity, Race, WatchPlan, ZoneLimits,
-    band_hz, race_order, velocity_noise_mm_s,
+    AssetPlan, Edges, Measure, PointPlan, PointSpec, Quantity, Race, StartingRule, WatchPlan,
+    ZoneLimits, band_hz, race_order, velocity_noise_mm_s,
 };
 use humward_signal::lowband;
 
@@ -111,7 +111,8 @@ fn write_asset(
     if let Some(signal) = &spec.run_signal {
         writeln!(
             out,
-            "  process value {signal} comes first: 0.5 or more means running"
+            "  process value {signal} comes first: 0.5 or more means running, after {} s of starting while no speed is reported",
+            spec.starting.signal_for.secs()
         )?;
     }
     if let Some(zones) = &spec.zones {
@@ -208,7 +209,7 @@ fn write_point(
         .iter()
         .filter(|watch| watch.spec().point == index)
     {
-        write_watch(watch, spec, out)?;
+        write_watch(watch, spec, &asset.spec().starting, out)?;
     }
     Ok(())
 }
@@ -246,7 +247,12 @@ fn write_bearing(spec: &PointSpec, nominal: f64, out: &mut dyn Write) -> io::Res
     Ok(())
 }
 
-fn write_watch(watch: &WatchPlan, point: &PointSpec, out: &mut dyn Write) -> io::Result<()> {
+fn write_watch(
+    watch: &WatchPlan,
+    point: &PointSpec,
+    starting: &StartingRule,
+    out: &mut dyn Write,
+) -> io::Result<()> {
     let spec = watch.spec();
     let measure = match spec.measure {
         Measure::VelocityRms => "velocity_rms".to_owned(),
@@ -282,6 +288,14 @@ fn write_watch(watch: &WatchPlan, point: &PointSpec, out: &mut dyn Write) -> io:
         if let Some(limit) = limit {
             write!(out, " {name} {}{unit} after {after},", limit.value())?;
         }
+    }
+    if let Some(armed) = starting.armed(spec) {
+        let after = starting.after.secs();
+        write!(
+            out,
+            " while starting {}{unit} after {after} s,",
+            figure(armed)
+        )?;
     }
     write!(
         out,

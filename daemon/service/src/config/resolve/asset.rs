@@ -89,13 +89,18 @@ pub(crate) fn read<'t>(
         .unwrap_or(true);
     let (watches, points) = watches(&made, wide, zones.as_ref(), usual, gather);
     let running = speed.and_then(|speed| running(view, speed));
+    let starting = starting(view);
     let spans = (
         inherited("reading_every"),
         inherited("status_every"),
         inherited("sensor_after"),
     );
-    let (Some(speed), Some(running), (Some(reading_every), Some(status_every), Some(sensor_after))) =
-        (speed, running, spans)
+    let (
+        Some(speed),
+        Some(running),
+        Some(starting),
+        (Some(reading_every), Some(status_every), Some(sensor_after)),
+    ) = (speed, running, starting, spans)
     else {
         return known.map(|_| made);
     };
@@ -105,7 +110,7 @@ pub(crate) fn read<'t>(
         speed,
         running,
         run_signal: view.id("run_signal"),
-        starting: StartingRule::USUAL,
+        starting,
         zones: zones.clone(),
         reading_every,
         status_every,
@@ -162,6 +167,14 @@ fn running(view: View<'_>, speed: SpeedRange) -> Option<RunningRule> {
         from_rpm,
         from_mm_s: view.number("running_from_mm_s")?,
         speed_valid: view.span("speed_valid")?,
+    })
+}
+
+fn starting(view: View<'_>) -> Option<StartingRule> {
+    Some(StartingRule {
+        factor: view.number("starting_factor")?,
+        after: view.span("starting_after")?,
+        signal_for: view.span("starting_for")?,
     })
 }
 

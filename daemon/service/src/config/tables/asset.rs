@@ -79,6 +79,24 @@ pub(crate) static ASSET: KeyTable = KeyTable {
             about: "How long a reported speed or run signal stays fresh.",
         },
         Key {
+            name: "starting_factor",
+            kind: Kind::Number(Range::new(2.0, 3.0, "times danger")),
+            need: Need::Default("3.0"),
+            about: "While it starts, velocity, acceleration and high band in rms ring at so many times their danger limit.",
+        },
+        Key {
+            name: "starting_after",
+            kind: Kind::Span(5, 30),
+            need: Need::Default("\"10s\""),
+            about: "How long that must be passed.",
+        },
+        Key {
+            name: "starting_for",
+            kind: Kind::Span(1, 600),
+            need: Need::Default("\"30s\""),
+            about: "How long a start lasts after the run signal rises while no speed is reported.",
+        },
+        Key {
             name: "speed_topic",
             kind: Kind::Topic,
             need: Need::Optional("speed/<asset> under the root and site"),
