@@ -73,7 +73,6 @@ impl Blocks {
         bias: impl Fn(f64) -> Option<f64>,
         mut each: impl FnMut(Block),
     ) {
-        let whole = matches!(self.encoding, Encoding::CborS16);
         let mut index = 0;
         while index < samples.len() {
             if self.samples.is_empty() {
@@ -85,13 +84,10 @@ impl Blocks {
                 self.samples.reserve_exact(self.length);
             }
             let until = samples.len().min(index + self.length - self.samples.len());
-            let scaled = samples[index..until].iter().map(|x| x * self.per_ms2);
-            if whole {
-                self.samples
-                    .extend(scaled.map(|x| x.round_ties_even() as f32));
-            } else {
-                self.samples.extend(scaled.map(|x| x as f32));
-            }
+            // Codes of 16 bit come out whole: their distance to the sensor's own is far below what a float holds.
+            let scaled = samples[index..until].iter();
+            self.samples
+                .extend(scaled.map(|x| (x * self.per_ms2) as f32));
             index = until;
             if self.samples.len() == self.length {
                 each(Block {

@@ -1,0 +1,344 @@
+//! The program as it is run: what it says, what it writes, how it ends.
+#![expect(
+    clippy::unwrap_used,
+    clippy::panic,
+    reason = "the helpers of a test stop at its first surprise"
+)]
+
+use std::fs;
+use std::path::PathBuf;
+use std::process::{Command, Output};
+use std::sync::atomic::{AtomicU32, Ordering};
+
+use humward_wire::recording::{Header, Record, open};
+
+/// A fresh folder of this test run.
+fn folder() -> PathBuf {
+    static COUNT: AtomicU32 = AtomicU32::new(0);
+    let count = COUNT.fetch_add(1, Ordering::Relaxed);
+    let path = std::env::temp_dir().join(format!("humward-sim-{}-{count}", std::process::id()));
+    fs::create_dir_all(&path).unwrap();
+    path
+}
+
+fn run(arguments: &[&str]) -> Output {
+    Command::new(env!("CARGO_BIN_EXE_humward-sim"))
+        .args(arguments)
+        .output()
+        .unwrap()
+}
+
+/// Exit code, standard output, standard error.
+fn told(output: &Output) -> (i32, String, String) {
+    let text = |bytes: &[u8]| String::from_utf8_lossy(bytes).into_owned();
+    (
+        output.status.code().unwrap_or(-1),
+        text(&output.stdout),
+        text(&output.stderr),
+    )
+}
+
+/// What the program says of a scenario with this text.
+fn explain(text: &str) -> (i32, String, String) {
+    let path = folder().join("mine.toml");
+    fs::write(&path, text).unwrap();
+    told(&run(&["explain", path.to_str().unwrap()]))
+}
+
+const SMALL: &str = r#"about = "A pump for tests."
+site = "harbour"
+seed = 9
+duration = "5s"
+
+[[asset]]
+id = "P-1"
+rpm = 1482
+speed_every = "1s"
+
+[[asset.point]]
+id = "de"
+rate_hz = 1000
+
+[[asset.point.sensor]]
+kind = "flat"
+at = "2s"
+"#;
+
+/// Renders [`SMALL`] and gives the bytes.
+fn rendered(more: &[&str]) -> Vec<u8> {
+    let folder = folder();
+    let (scenario, out) = (folder.join("small.toml"), folder.join("small.rec"));
+    fs::write(&scenario, SMALL).unwrap();
+    let mut arguments = vec![
+        "render",
+        scenario.to_str().unwrap(),
+        "--out",
+        out.to_str().unwrap(),
+    ];
+    arguments.extend(more);
+    let (code, said, fault) = told(&run(&arguments));
+    assert_eq!((code, fault.as_str()), (0, ""));
+    let bytes = fs::read(&out).unwrap();
+    assert!(said.contains(&format!("{} bytes", bytes.len())), "{said}");
+    assert_eq!(
+        fs::read_dir(&folder).unwrap().count(),
+        2,
+        "nothing is left beside"
+    );
+    bytes
+}
+
+fn messages(bytes: &[u8]) -> (Header, Vec<(i64, String)>) {
+    let (header, reader) = open(bytes).unwrap();
+    let messages = reader
+        .map(|item| match item.unwrap().1 {
+            Record::Message { arrival, topic, .. } => (arrival, topic.to_owned()),
+            other => panic!("{other:?}"),
+        })
+        .collect();
+    (header, messages)
+}
+
+#[test]
+fn the_catalogue_is_listed_and_every_scenario_of_it_explained() {
+    let (code, listed, fault) = told(&run(&["list"]));
+    assert_eq!((code, fault.as_str()), (0, ""));
+    let names: Vec<&str> = listed
+        .lines()
+        .filter_map(|line| line.split_whitespace().next())
+        .collect();
+    assert!(names.contains(&"imbalance-growing"), "{listed}");
+    for name in names {
+        let (code, text, fault) = told(&run(&["explain", name]));
+        assert_eq!((code, fault.as_str()), (0, ""), "{name}");
+        assert!(
+            text.starts_with(name) && text.contains("Simulated."),
+            "{text}"
+        );
+    }
+}
+
+#[test]
+fn a_recording_reopens_whole_in_order_and_with_the_truth_in_its_header() {
+    let (header, messages) = messages(&rendered(&[]));
+    assert_eq!(
+        (header.site.as_str(), header.root.as_deref()),
+        ("harbour", Some("humward/v1"))
+    );
+    let truth: serde_json::Value = serde_json::from_str(&header.truth.unwrap()).unwrap();
+    assert_eq!(truth["simulated"], true);
+    assert_eq!(
+        (&truth["scenario"], truth["seed"].as_u64()),
+        (&"small".into(), Some(9))
+    );
+    assert_eq!(truth["start"], "2026-03-02T03:00:00.000Z");
+    assert!(messages.windows(2).all(|two| two[0].0 <= two[1].0));
+    let of = |ending: &str| messages.iter().filter(|m| m.1.ends_with(ending)).count();
+    assert_eq!(
+        (of("block/P-1/de"), of("speed/P-1"), messages.len()),
+        (5, 5, 10)
+    );
+}
+
+#[test]
+fn the_same_seed_renders_the_same_bytes_and_another_does_not() {
+    let first = rendered(&[]);
+    assert!(first == rendered(&["--seed", "9"]));
+    assert!(first != rendered(&["--seed", "10"]));
+    let (_, later) = messages(&rendered(&[
+        "--start",
+        "2026-05-01T00:00:00Z",
+        "--duration",
+        "3s",
+    ]));
+    // `date -u -d 2026-05-01 +%s`
+    assert_eq!(
+        (later.len(), later[0].0 / 60_000_000_000),
+        (6, 1_777_593_600 / 60)
+    );
+}
+
+#[test]
+fn a_file_that_is_there_stays_unless_it_is_to_be_replaced() {
+    let out = folder().join("kept.rec");
+    fs::write(&out, "dear").unwrap();
+    let render = |more: &[&str]| {
+        let mut arguments = vec![
+            "render",
+            "healthy-pump",
+            "--duration",
+            "1s",
+            "--out",
+            out.to_str().unwrap(),
+        ];
+        arguments.extend(more);
+        told(&run(&arguments))
+    };
+    let (code, _, fault) = render(&[]);
+    assert_eq!(
+        (code, fs::read_to_string(&out).unwrap().as_str()),
+        (3, "dear")
+    );
+    assert!(fault.contains("--replace"), "{fault}");
+    assert_eq!(render(&["--replace"]).0, 0);
+    assert!(open(&fs::read(&out).unwrap()).is_ok());
+    let (code, _, fault) = told(&run(&[
+        "render",
+        "healthy-pump",
+        "--out",
+        "/no/such/folder/x.rec",
+    ]));
+    assert_eq!(code, 3);
+    assert!(
+        fault.contains("/no/such/folder/x.rec cannot be written"),
+        "{fault}"
+    );
+}
+
+#[test]
+fn an_unknown_key_is_told_with_its_line_and_the_keys_there_are() {
+    let (code, _, fault) = explain(&SMALL.replace("rate_hz = 1000", "rate = 1000"));
+    assert_eq!(code, 1);
+    assert!(
+        fault.contains("line 13") && fault.contains("`rate`"),
+        "{fault}"
+    );
+    assert!(fault.contains("`rate_hz`"), "{fault}");
+    let (code, _, fault) = explain(&SMALL.replace("at = \"2s\"", "since = \"2s\""));
+    assert_eq!(code, 1);
+    assert!(
+        fault.contains("line 15") && fault.contains("`since`"),
+        "{fault}"
+    );
+    let (_, _, fault) = explain(&SMALL.replace("\"2s\"", "\"soon\""));
+    assert!(
+        fault.contains("\"soon\" is not a length of time") && fault.contains("90s"),
+        "{fault}"
+    );
+    let (_, _, fault) = explain(&SMALL.replace("\"flat\"", "\"sleepy\""));
+    assert!(
+        fault.contains("sleepy") && fault.contains("`fallen-off`"),
+        "{fault}"
+    );
+}
+
+#[test]
+fn every_value_that_does_not_fit_is_told_in_one_run_with_what_is_allowed() {
+    let text = SMALL
+        .replace("\"harbour\"", "\"har/bour\"")
+        .replace(
+            "id = \"de\"",
+            "id = \"\"\nblock = \"1ms\"\noffset_g = 3\nresonance_hz = 600",
+        )
+        .replace("at = \"2s\"", "at = \"2s\"\nuntil = \"1s\"")
+        + "[[asset.point.transport]]\nkind = \"lost\"\nshare = 1.5\n"
+        + "[[asset.point.transport]]\nkind = \"late\"\nby = \"2000h\"\n"
+        + "[[asset.point.sensor]]\nkind = \"cable\"\nat = \"1s\"\nper_minute = 0\n";
+    let (code, _, fault) = explain(&text);
+    assert_eq!(code, 1);
+    for told in [
+        "site \"har/bour\"",
+        "the id is empty",
+        "block x rate_hz is 1; allowed: 16 to 262144 samples",
+        "offset_g is 3; allowed: -2 to 2 g",
+        "resonance_hz is 600; allowed: 10 to 450 Hz",
+        "sensor flat: until 1 s is not after at 2 s",
+        "transport lost: share is 1.5; allowed: 0 to 1",
+        "transport late: by is 7200000; allowed: 0 to 86400 s",
+        "sensor cable: per_minute is 0; allowed: 0.01 to 600 per minute",
+    ] {
+        assert!(fault.contains(told), "{told:?} is not in {fault}");
+    }
+    assert_eq!(fault.trim().lines().count(), 10, "{fault}");
+}
+
+#[test]
+fn a_block_too_large_for_a_message_is_refused() {
+    let long = "rate_hz = 50000\nblock = \"5s\"\nencoding = \"json\"";
+    let (code, _, fault) = explain(&SMALL.replace("rate_hz = 1000", long));
+    assert_eq!(code, 1);
+    assert!(
+        fault.contains("block in bytes is 4000000; allowed: 0 to 1000000"),
+        "{fault}"
+    );
+}
+
+#[test]
+fn a_name_that_is_no_scenario_is_told_with_the_nearest() {
+    let (code, _, fault) = told(&run(&["explain", "imbalance-growin"]));
+    assert_eq!(code, 1);
+    assert!(fault.contains("did you mean imbalance-growing?"), "{fault}");
+}
+
+#[test]
+fn a_command_line_that_is_not_understood_ends_with_two_and_says_why() {
+    for (arguments, why) in [
+        (
+            vec!["play", "healthy-pump", "--factor", "0"],
+            "0.01 to 1000",
+        ),
+        (
+            vec!["play", "healthy-pump", "--start", "2026-03-02T03:00:00Z"],
+            "without --factor",
+        ),
+        (
+            vec!["play", "healthy-pump", "--endless", "--duration", "1h"],
+            "--endless",
+        ),
+        (
+            vec!["play", "healthy-pump", "--username", "pump"],
+            "--password-file",
+        ),
+        (vec!["play", "healthy-pump", "--client-id", "a b"], "A-Z"),
+        (vec!["render", "healthy-pump"], "--out"),
+        (
+            vec!["render", "healthy-pump", "--out", "x", "--duration", "0s"],
+            "allowed: 1 to",
+        ),
+        (
+            vec!["explain", "healthy-pump", "--start", "soon"],
+            "2026-03-02T03:00:00Z",
+        ),
+    ] {
+        let (code, _, fault) = told(&run(&arguments));
+        assert_eq!(code, 2, "{arguments:?}: {fault}");
+        assert!(fault.contains(why), "{arguments:?}: {fault}");
+    }
+}
+
+#[test]
+fn a_broker_that_is_not_there_ends_a_play_with_its_address_and_the_remedy() {
+    // Port 1 of this machine is nobody's.
+    let (code, said, fault) = told(&run(&[
+        "play",
+        "healthy-pump",
+        "--port",
+        "1",
+        "--duration",
+        "5s",
+    ]));
+    assert_eq!(code, 3);
+    assert!(said.starts_with("simulated: healthy-pump, seed "), "{said}");
+    assert!(
+        said.contains("under humward/v1/") && said.contains("in real time"),
+        "{said}"
+    );
+    assert!(
+        fault.contains("broker 127.0.0.1:1: no connection"),
+        "{fault}"
+    );
+    assert!(
+        fault.contains("start the broker, or give its --host and --port"),
+        "{fault}"
+    );
+    let (code, _, fault) = told(&run(&[
+        "play",
+        "healthy-pump",
+        "--username",
+        "a",
+        "--password-file",
+        "/no/file",
+    ]));
+    assert_eq!(code, 3);
+    assert!(fault.contains("/no/file cannot be read"), "{fault}");
+}
