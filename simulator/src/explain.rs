@@ -22,19 +22,18 @@ pub fn words(seconds: f64) -> String {
     }
 }
 
-fn seen(seen: Seen) -> &'static str {
-    match seen {
-        Seen::Velocity => "velocity spectrum",
-        Seen::Envelope => "envelope spectrum",
+fn place(line: &Expected) -> String {
+    let place = match line.seen {
+        Seen::Velocity => "velocity",
+        Seen::Envelope => "envelope",
         Seen::Acceleration => "acceleration",
-    }
-}
-
-fn level(line: &Expected) -> String {
+    };
     match (line.level, line.seen) {
-        (None, _) => String::new(),
-        (Some(level), Seen::Velocity) => format!("{level:.2} mm/s rms"),
-        (Some(level), Seen::Envelope | Seen::Acceleration) => format!("{level:.1} m/s2"),
+        (None, _) => place.to_owned(),
+        (Some(level), Seen::Velocity) => format!("{place:<12} {level:5.2} mm/s"),
+        (Some(level), Seen::Envelope | Seen::Acceleration) => {
+            format!("{place:<12} {level:5.2} m/s2")
+        }
     }
 }
 
@@ -110,46 +109,45 @@ fn tell_asset(text: &mut String, asset: &AssetTruth) {
 }
 
 fn tell_fault(text: &mut String, fault: &FaultTruth) {
-    let place = fault
+    let seat = fault
         .point
         .as_ref()
         .map_or(String::new(), |point| format!(" at {point}"));
     let _ = writeln!(
         text,
-        "  {}{place}, from {} on",
+        "  {}{seat}, from {} on",
         fault.kind,
         words(fault.onset_s)
     );
     let growth = if fault.law == "step" {
         format!("{} at once", fault.to)
     } else {
+        let full = words(fault.full_s);
         format!(
-            "{} to {}, {}, until {}",
-            fault.from,
-            fault.to,
-            fault.law,
-            words(fault.full_s)
+            "{} to {}, {}, until {full}",
+            fault.from, fault.to, fault.law
         )
     };
-    let _ = writeln!(text, "    severity ({}): {growth}", fault.severity);
+    for line in folded(&format!("severity: {growth} ({})", fault.severity), 76) {
+        let _ = writeln!(text, "    {line}");
+    }
     if fault.lines.is_empty() {
         let _ = writeln!(text, "    lines to expect: none");
         return;
     }
     let _ = writeln!(
         text,
-        "    lines to expect at nominal speed and full growth, before the path:"
+        "    lines to expect at nominal speed and full growth, rms, before the path:"
     );
     for line in &fault.lines {
-        let row = format!(
-            "      {:<28.28} {:>8.2} Hz {:>7.3} x  {:<17} {}",
+        let _ = writeln!(
+            text,
+            "      {:<26} {:>8.2} Hz {:>7.3}x  {}",
             line.line,
             line.hz,
             line.order,
-            seen(line.seen),
-            level(line)
+            place(line)
         );
-        let _ = writeln!(text, "{}", row.trim_end());
     }
 }
 
@@ -180,10 +178,10 @@ fn tell_point(text: &mut String, point: &PointTruth) {
         );
     }
     for fault in &point.sensor {
-        let _ = writeln!(text, "    sensor: {fault}");
+        let _ = writeln!(text, "    sensor: {}", fault.text);
     }
     for fault in &point.transport {
-        let _ = writeln!(text, "    transport: {fault}");
+        let _ = writeln!(text, "    transport: {}", fault.text);
     }
 }
 

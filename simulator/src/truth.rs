@@ -9,11 +9,13 @@ mod crossing;
 
 pub use crossing::{Crossing, Direction};
 
+use core::fmt::Display;
+
 use serde::Serialize;
 
 use crate::fault::Expected;
 use crate::random::Draw;
-use crate::scenario::{Asset, Scenario};
+use crate::scenario::{Asset, Scenario, Window};
 use crate::wave::GrowthLaw;
 
 /// The truth of a scenario.
@@ -93,9 +95,33 @@ pub struct PointTruth {
     /// When it crosses the levels asked for.
     pub crossings: Vec<Crossing>,
     /// Faults of the sensor.
-    pub sensor: Vec<String>,
+    pub sensor: Vec<Trouble>,
     /// Faults on the way.
-    pub transport: Vec<String>,
+    pub transport: Vec<Trouble>,
+}
+
+/// The truth of something wrong with a sensor or on the way.
+#[derive(Clone, Debug, PartialEq, Serialize)]
+pub struct Trouble {
+    /// What it is.
+    pub kind: String,
+    /// When it begins, s after the start.
+    pub at_s: f64,
+    /// When it ends, s after the start; `None` when it never does.
+    pub until_s: Option<f64>,
+    /// All of it in one clause.
+    pub text: String,
+}
+
+impl Trouble {
+    fn of(kind: &str, window: Window, text: &impl Display) -> Trouble {
+        Trouble {
+            kind: kind.to_owned(),
+            at_s: window.at_s(),
+            until_s: Some(window.until_s()).filter(|until| until.is_finite()),
+            text: text.to_string(),
+        }
+    }
 }
 
 /// RFC 3339 of a moment, ns since 1970, to the millisecond.
@@ -137,12 +163,12 @@ pub fn tell(scenario: &Scenario, start_ns: i64) -> Truth {
                         sensor: point
                             .sensor_faults
                             .iter()
-                            .map(|fault| format!("{fault:?}"))
+                            .map(|fault| Trouble::of(fault.name(), fault.window(), fault))
                             .collect(),
                         transport: point
                             .transport_faults
                             .iter()
-                            .map(|fault| format!("{fault:?}"))
+                            .map(|fault| Trouble::of(fault.name(), fault.window(), fault))
                             .collect(),
                     }
                 })

@@ -101,14 +101,14 @@ impl Kind for Cavitation {
         let hz = f64::from(asset.vanes) * asset.nominal_rpm() / 60.0;
         vec![
             Expected {
-                line: "a mound without even spacing, from".to_owned(),
+                line: "mound without spacing, from".to_owned(),
                 hz: 2000.0,
                 order: 2000.0 * 60.0 / asset.nominal_rpm(),
                 seen: Seen::Acceleration,
                 level: Some(self.growth.to),
             },
             Expected {
-                line: "the mound breathes at vane pass".to_owned(),
+                line: "mound breathes at vane pass".to_owned(),
                 hz,
                 order: f64::from(asset.vanes),
                 seen: Seen::Envelope,

@@ -3,7 +3,7 @@
 //! Severity: stage 1 to 4. Strikes once per ball pass with accumulating slip (sigma 0.8-1.6 %, the mean 1 % below to
 //! 0.3 % above geometry), ring the modes of the structure. The outer ring's pit lies in the load zone; the inner
 //! ring's turns through it (Stribeck), so its strikes come and go with the shaft. Height of the strikes: [`PIT`];
-//! distributed wear: noise that breathes with the ball pass or shaft, [`FLOOR`], whose velocity is [`FELT`]. From
+//! distributed wear: noise that breathes with the shaft, [`FLOOR`], whose velocity is [`FELT`]. From
 //! stage 3 strikes weaken as edges round off while the floor rises. Structure: Antoni & Randall 2003, D'Elia et al.;
 //! levels: common practice, no source. Velocity hardly moves before stage 3.
 
@@ -139,13 +139,9 @@ fn waves(fault: &RacePit, ring: Ring, seat: &Seat<'_>) -> Vec<Box<dyn Wave>> {
         ],
         rate_hz,
     );
-    let breath = match ring {
-        Ring::Outer => order,
-        Ring::Inner => 1.0,
-    };
     let wear = Noise::new(vec![
         Voice::with_rms(high, rate_hz, gain, law(floor), seat.local.part("wear"))
-            .modulated(breath, 0.3),
+            .modulated(1.0, 0.3),
         Voice::with_velocity(low, gain, law(felt), seat.local.part("felt")),
     ]);
     vec![Box::new(BurstTrain::new(strikes, modes)), Box::new(wear)]
@@ -173,7 +169,7 @@ fn expected(fault: &RacePit, ring: Ring, asset: &Asset, draw: &Draw) -> Vec<Expe
         level,
     };
     let mut lines = vec![line(
-        format!("{name}, strikes"),
+        format!("{name}, strike height"),
         order,
         Some(pit(fault.growth.to)),
     )];
