@@ -91,9 +91,11 @@ fn rendered(more: &[&str]) -> Vec<u8> {
 fn messages(bytes: &[u8]) -> (Header, Vec<(i64, String)>) {
     let (header, reader) = open(bytes).unwrap();
     let messages = reader
-        .map(|item| match item.unwrap().1 {
-            Record::Message { arrival, topic, .. } => (arrival, topic.to_owned()),
-            other => panic!("{other:?}"),
+        .map(|item| {
+            let Record::Message { arrival, topic, .. } = item.unwrap().1 else {
+                panic!("a record that is no message");
+            };
+            (arrival, topic.to_owned())
         })
         .collect();
     (header, messages)

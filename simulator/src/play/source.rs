@@ -87,3 +87,48 @@ impl Source {
         }
     }
 }
+
+#[cfg(test)]
+mod tests {
+    use super::Source;
+    use crate::play::PlayFault;
+    use crate::transport::Delivery;
+
+    fn delivery(arrival_ns: i64) -> Delivery {
+        Delivery {
+            arrival_ns,
+            topic: "a".to_owned(),
+            payload: Vec::new(),
+        }
+    }
+
+    fn end(world: impl Iterator<Item = Delivery> + Send + 'static) -> (i64, Result<(), PlayFault>) {
+        let mut source = Source::start(world).unwrap();
+        let runtime = tokio::runtime::Builder::new_current_thread()
+            .build()
+            .unwrap();
+        let mut taken = 0;
+        while !source.over() {
+            runtime.block_on(source.made());
+            taken += i64::from(source.take().is_some());
+        }
+        (taken, source.finish())
+    }
+
+    #[test]
+    fn a_world_that_breaks_off_is_not_taken_for_one_that_is_over() {
+        let (taken, ended) = end((0..1000).map(delivery));
+        assert!(taken == 1000 && ended.is_ok());
+        let (taken, ended) = end((0..1000).map(|at| {
+            assert!(at < 500, "the world of a test breaks off");
+            delivery(at)
+        }));
+        assert!(taken == 500 && matches!(ended, Err(PlayFault::World)));
+    }
+
+    #[test]
+    fn a_source_that_is_let_go_early_ends_well() {
+        let source = Source::start((0..).map(delivery)).unwrap();
+        assert!(source.finish().is_ok());
+    }
+}

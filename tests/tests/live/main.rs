@@ -7,6 +7,7 @@ mod faster;
 mod lifecycle;
 mod real_recordings;
 mod refusals;
+mod simulated;
 
 /// A site of one point, read every second, watched for velocity; the broker is on `port`.
 fn site(port: u16) -> String {
