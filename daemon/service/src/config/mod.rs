@@ -52,7 +52,25 @@ pub enum Checked {
 /// # Errors
 /// Every fault found; zone tables alone lack a site and assets.
 pub fn load(path: &Path, variables: &[(String, String)]) -> Result<Loaded, Faults> {
-    match check(path, variables)? {
+    whole(check(path, variables)?, path)
+}
+
+/// Checks a configuration that is at hand as `text`; faults name it as `path`, files beside it are looked for there.
+///
+/// # Errors
+/// As [`load`].
+pub fn load_text(
+    path: &Path,
+    text: &str,
+    variables: &[(String, String)],
+) -> Result<Loaded, Faults> {
+    let mut sources = Sources::default();
+    sources.add_file(path, text.into());
+    whole(checked(path, sources, Vec::new(), variables)?, path)
+}
+
+fn whole(checked: Checked, path: &Path) -> Result<Loaded, Faults> {
+    match checked {
         Checked::Whole(loaded) => Ok(*loaded),
         Checked::ZoneTables(_) => Err(Faults::one(Fault {
             place: Told::Path(path.into()),
@@ -71,6 +89,15 @@ pub fn load(path: &Path, variables: &[(String, String)]) -> Result<Loaded, Fault
 pub fn check(path: &Path, variables: &[(String, String)]) -> Result<Checked, Faults> {
     let mut sources = Sources::default();
     let unreadable = files::read(path, &mut sources);
+    checked(path, sources, unreadable, variables)
+}
+
+fn checked(
+    path: &Path,
+    mut sources: Sources,
+    unreadable: Vec<Fault>,
+    variables: &[(String, String)],
+) -> Result<Checked, Faults> {
     environment::keep(variables, &mut sources);
     let mut gather = Gather::new(&sources);
     let (tree, broken) = files::merged(&mut gather);
@@ -127,4 +154,28 @@ fn zone_tables_alone(tree: &Node) -> bool {
 
 fn missing_at_the_top(fault: &Fault) -> bool {
     fault.code == Code::MissingKey && !fault.key.contains('.')
+}
+
+#[cfg(test)]
+mod tests {
+    use std::path::Path;
+
+    use super::load_text;
+
+    const LEAST: &str = include_str!("../../../../config/minimal.toml");
+
+    #[test]
+    fn a_text_at_hand_is_a_configuration_over_which_variables_lie() {
+        let port = ("HUMWARD_BROKER__PORT".to_owned(), "18830".to_owned());
+        let loaded = load_text(Path::new("least.toml"), LEAST, &[port]).unwrap();
+        assert_eq!(loaded.site().as_str(), "harbour");
+        assert_eq!(loaded.broker().port(), 18_830);
+    }
+
+    #[test]
+    fn a_fault_of_a_text_at_hand_stands_where_the_text_says_it_is_from() {
+        let faults = load_text(Path::new("least.toml"), "site = 3\n", &[]).unwrap_err();
+        let told = faults.to_string();
+        assert!(told.contains("least.toml:1:8: site"), "{told}");
+    }
 }
