@@ -309,6 +309,46 @@ fn a_command_line_that_is_not_understood_ends_with_two_and_says_why() {
 }
 
 #[test]
+fn a_play_tells_at_its_start_what_it_injects_and_when_and_nothing_beyond_its_end() {
+    let play = |duration: &str| {
+        let start = "2026-03-02T03:00:00Z";
+        let (code, said, _) = told(&run(&[
+            "play",
+            "imbalance-growing",
+            "--port",
+            "1",
+            "--factor",
+            "10",
+            "--start",
+            start,
+            "--seed",
+            "4",
+            "--duration",
+            duration,
+        ]));
+        assert_eq!(code, 3);
+        said
+    };
+    let said = play("15min");
+    assert!(
+        said.starts_with("simulated: imbalance-growing, seed 4, site harbour, "),
+        "{said}"
+    );
+    assert!(
+        said.contains("10 times as fast as true time; a daemon needs a clock"),
+        "{said}"
+    );
+    let onset = "  2026-03-02T03:02:00.000Z  P-103A: imbalance begins";
+    assert!(said.lines().any(|line| line == onset), "{said}");
+    assert!(
+        said.contains("clean velocity rises above 4 mm/s rms"),
+        "{said}"
+    );
+    let short = play("1min");
+    assert!(short.contains("nothing is injected"), "{short}");
+}
+
+#[test]
 fn a_broker_that_is_not_there_ends_a_play_with_its_address_and_the_remedy() {
     // Port 1 of this machine is nobody's.
     let (code, said, fault) = told(&run(&[

@@ -69,7 +69,12 @@ pub(super) fn play(
         "in real time".to_owned()
     };
     writeln!(out, "{length} from {}, {speed}", moment(start_ns, 0.0))?;
-    for line in schedule(scenario, &truth, start_ns) {
+    let until_s = if playing.endless {
+        f64::INFINITY
+    } else {
+        scenario.duration.0
+    };
+    for line in schedule(scenario, &truth, start_ns, until_s) {
         writeln!(out, "  {line}")?;
     }
     out.flush()?;

@@ -55,9 +55,16 @@ fn moments(scenario: &Scenario, truth: &Truth) -> Vec<(f64, String)> {
     all
 }
 
-/// A line for each moment, with its time when the play starts at `start_ns`; one line when nothing happens.
-pub(super) fn schedule(scenario: &Scenario, truth: &Truth, start_ns: i64) -> Vec<String> {
-    let moments = moments(scenario, truth);
+/// A line for each moment before `until_s`, with its time when the play starts at `start_ns`; one line when nothing
+/// happens.
+pub(super) fn schedule(
+    scenario: &Scenario,
+    truth: &Truth,
+    start_ns: i64,
+    until_s: f64,
+) -> Vec<String> {
+    let mut moments = moments(scenario, truth);
+    moments.retain(|(after_s, _)| *after_s < until_s);
     if moments.is_empty() {
         return vec!["nothing is injected: all machines and sensors stay well".to_owned()];
     }
