@@ -7,6 +7,7 @@
 mod account;
 mod announce;
 mod armed;
+mod beside;
 mod counter;
 mod message;
 mod replan;

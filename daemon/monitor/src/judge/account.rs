@@ -7,6 +7,7 @@ use humward_wire::out::{Instant, Line, Measured, Quality, Severity, Zoned};
 use super::{
     Context,
     armed::Armed,
+    beside::Beside,
     message::severity_word,
     sentence::{self, clock, duration, two_digits},
     watch::Change,
@@ -37,6 +38,8 @@ pub(super) struct Account<'a> {
     pub(super) limit: Option<f64>,
     /// The limit it rang by while the machine did not run steadily.
     pub(super) armed: Option<Armed>,
+    /// The bearing alarm that stands at the same point.
+    pub(super) beside: Option<Beside>,
     pub(super) change: Change,
     pub(super) severity: Severity,
 }
@@ -105,24 +108,14 @@ pub(super) fn measured(
     }
 }
 
-/// The lines it rests on: the bearing line, or the strongest of the velocity spectrum.
+/// The lines it rests on: the bearing line, of this watch or of an alarm beside it, and the strongest of the velocity
+/// spectrum.
 pub(super) fn lines(account: &Account<'_>) -> Vec<Line> {
     let reading = account.reading;
     let shaft_hz = reading.speed.rpm() / 60.0;
     let point = account.point();
     if let Some((race, line)) = account.race() {
-        let (from, to) = point.envelope_hz.unwrap_or_default();
-        return alloc::vec![Line {
-            label: format!("{} race rate, envelope", race.text())
-                .replace("element race", "rolling element"),
-            frequency_hz: line.frequency_hz,
-            order: Some(line.order),
-            strength_db: Some(line.db),
-            strength: Some(line.ms2),
-            unit: "m/s2 rms".into(),
-            band_hz: [from, to],
-            resolution_hz: reading.resolution_hz,
-        }];
+        return alloc::vec![race_line(account, race, line)];
     }
     if matches!(account.plan.spec().measure, Measure::Bearing(_)) {
         return Vec::new();
@@ -134,8 +127,11 @@ pub(super) fn lines(account: &Account<'_>) -> Vec<Line> {
         .map_or(0.0, |line| line.velocity_rms);
     let told = reading.strongest.iter().take(LINES_TOLD);
     let telling = told.filter(|line| line.velocity_rms >= LEAST_SHARE * strongest);
-    telling
-        .map(|line| {
+    let race = account
+        .beside
+        .and_then(|beside| Some(race_line(account, beside.race, beside.line?)));
+    race.into_iter()
+        .chain(telling.map(|line| {
             // By the nominal speed a line would be given a name it may not have.
             let order = reported.then(|| line.frequency_hz / shaft_hz);
             let whole =
@@ -153,8 +149,23 @@ pub(super) fn lines(account: &Account<'_>) -> Vec<Line> {
                 band_hz: [point.velocity_from_hz, 1000.0],
                 resolution_hz: reading.resolution_hz,
             }
-        })
+        }))
         .collect()
+}
+
+fn race_line(account: &Account<'_>, race: Race, line: RaceLine) -> Line {
+    let (from, to) = account.point().envelope_hz.unwrap_or_default();
+    Line {
+        label: format!("{} race rate, envelope", race.text())
+            .replace("element race", "rolling element"),
+        frequency_hz: line.frequency_hz,
+        order: Some(line.order),
+        strength_db: Some(line.db),
+        strength: Some(line.ms2),
+        unit: "m/s2 rms".into(),
+        band_hz: [from, to],
+        resolution_hz: account.reading.resolution_hz,
+    }
 }
 
 /// What else the reading says, the most telling first.
@@ -261,7 +272,14 @@ pub(super) fn text(account: &Account<'_>, story: &Story) -> String {
     } else {
         "sensor good"
     };
-    let parts = [what, velocity(account), format!("{speed}, {sensor}.")];
+    let evidence = match account
+        .beside
+        .filter(|_| account.severity != Severity::None)
+    {
+        Some(beside) => beside.said(),
+        None => velocity(account),
+    };
+    let parts = [what, evidence, format!("{speed}, {sensor}.")];
     match account.severity {
         Severity::None => sentence::join(&parts),
         Severity::Alert => sentence::with_checks(&parts, "Next", checks(account)),
@@ -274,7 +292,11 @@ pub(super) const fn checks(account: &Account<'_>) -> &'static [&'static str] {
     match account.severity {
         Severity::None => &[],
         Severity::Alert | Severity::Danger => {
-            words::checks(account.plan.spec().measure, account.severity)
+            let measure = match account.beside {
+                Some(beside) => Measure::Bearing(beside.race),
+                None => account.plan.spec().measure,
+            };
+            words::checks(measure, account.severity)
         }
     }
 }
@@ -367,7 +389,7 @@ fn course(account: &Account<'_>, story: &Story) -> String {
     };
     match account.change {
         Change::Raised(_) => format!(" since {since}"),
-        Change::Worsened => format!(", worsened from alert, over its limits since {since}"),
+        Change::Worsened => format!(", worsened, over its limits since {since}"),
         Change::Reraised => format!(", again in the alarm that stands since {since}"),
         Change::Eased => format!("{below}; the alert stands since {since}"),
         Change::Cleared => {
@@ -424,7 +446,7 @@ fn velocity(account: &Account<'_>) -> String {
 }
 
 /// A frequency: whole hertz from 100 Hz on, two digits below.
-fn two_or_more_digits(hz: f64) -> String {
+pub(super) fn two_or_more_digits(hz: f64) -> String {
     if hz >= 100.0 {
         format!("{hz:.0}")
     } else {

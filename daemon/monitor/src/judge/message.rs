@@ -24,6 +24,7 @@ use super::{
     AssetJudge, Context, Operating,
     account::{self, Account},
     announce::Turn,
+    beside::beside,
     sentence,
     watch::Change,
 };
@@ -187,6 +188,7 @@ pub(super) fn watch_event(
         reading,
         limit,
         armed,
+        beside: beside(judge, context, index, reading),
         change,
         severity,
     };

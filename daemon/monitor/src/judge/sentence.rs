@@ -101,17 +101,24 @@ pub(super) fn join(parts: &[String]) -> String {
 }
 
 /// As [`join`], with as many checks after them as fit, the most telling first.
+///
+/// Where not even one fits the second part gives way: what to do next is never what is left out.
 pub(super) fn with_checks(parts: &[String], lead: &str, checks: &[&str]) -> String {
-    let mut all = parts.to_vec();
-    let whole: usize = parts.iter().map(|part| part.chars().count() + 1).sum();
-    for count in (1..=checks.len()).rev() {
-        let next = format!("{lead}: {}.", checks[..count].join(", "));
-        if whole + next.chars().count() + 1 + LAST_WORDS.len() <= MAX_TEXT {
-            all.push(next);
-            break;
-        }
+    let all = |kept: &[String]| {
+        let whole: usize = kept.iter().map(|part| part.chars().count() + 1).sum();
+        (1..=checks.len()).rev().find_map(|count| {
+            let next = format!("{lead}: {}.", checks[..count].join(", "));
+            let room = whole + next.chars().count() + 1 + LAST_WORDS.len() <= MAX_TEXT;
+            room.then(|| join(&[kept, &[next]].concat()))
+        })
+    };
+    let mut fewer = parts.to_vec();
+    if fewer.len() > 1 {
+        fewer.remove(1);
     }
-    join(&all)
+    all(parts)
+        .or_else(|| all(&fewer))
+        .unwrap_or_else(|| join(parts))
 }
 
 fn fits(sentence: &str, part: &str) -> bool {
@@ -172,6 +179,11 @@ mod tests {
         assert!(said.len() <= MAX_TEXT);
         let part = ["x".repeat(284)];
         assert_eq!(with_checks(&part, "Next", &["look"]).len(), 284 + 15);
+        let parts = ["What.".to_string(), "x".repeat(270), "Running.".to_string()];
+        assert_eq!(
+            with_checks(&parts, "Next", &["look here"]),
+            "What. Running. Next: look here. Advisory only."
+        );
     }
 
     #[test]
