@@ -128,6 +128,69 @@ fn the_simulator_never_sees_how_the_daemon_measures() {
     );
 }
 
+/// What only `humward-demo` may depend on, beside the daemon and the simulator at once.
+const BROKER: &str = "rumqttd";
+
+#[test]
+fn the_demo_alone_knows_daemon_and_simulator_together_and_alone_holds_a_broker() {
+    let workspace: toml::Table = fs::read_to_string(root().join("Cargo.toml"))
+        .unwrap()
+        .parse()
+        .unwrap();
+    let members = workspace["workspace"]["members"].as_array().unwrap();
+    let mut together = Vec::new();
+    let mut brokers = Vec::new();
+    for member in members.iter().filter_map(toml::Value::as_str) {
+        let manifest = manifest(member);
+        let mut found = BTreeSet::new();
+        for section in ["dependencies", "dev-dependencies", "build-dependencies"] {
+            found.extend(keys(manifest.get(section)));
+        }
+        // The package of tests sees everything; nothing is made of it.
+        if found.contains("humward") && found.contains("humward-sim") && member != "tests" {
+            together.push(member);
+        }
+        if found.contains(BROKER) {
+            brokers.push(member);
+        }
+    }
+    assert_eq!(together, ["simulator/demo"]);
+    assert_eq!(brokers, ["simulator/demo"]);
+}
+
+#[test]
+fn nothing_the_daemon_is_built_of_is_a_broker() {
+    let lock: toml::Table = fs::read_to_string(root().join("Cargo.lock"))
+        .unwrap()
+        .parse()
+        .unwrap();
+    let packages = lock["package"].as_array().unwrap();
+    let mut waiting = vec!["humward".to_owned()];
+    let mut reached = BTreeSet::new();
+    while let Some(name) = waiting.pop() {
+        if !reached.insert(name.clone()) {
+            continue;
+        }
+        // Of several versions of a package every one counts: that is more than the daemon takes, never less.
+        for package in packages
+            .iter()
+            .filter(|package| package["name"].as_str() == Some(&name))
+        {
+            let needed = package.get("dependencies").and_then(toml::Value::as_array);
+            waiting.extend(
+                needed
+                    .into_iter()
+                    .flatten()
+                    .filter_map(toml::Value::as_str)
+                    .filter_map(|entry| entry.split(' ').next())
+                    .map(str::to_owned),
+            );
+        }
+    }
+    assert!(reached.contains("rumqttc"), "the walk reaches the client");
+    assert!(!reached.contains(BROKER), "humward is built with {BROKER}");
+}
+
 #[test]
 fn every_crate_takes_the_lints_of_the_workspace_and_each_dependency_says_why() {
     let workspace_text = fs::read_to_string(root().join("Cargo.toml")).unwrap();
