@@ -132,10 +132,14 @@ proptest! {
             inputs.push(vibrates(s, shakes));
         }
         let mut told = states(&acts(inputs))?;
-        // Between reports further apart than a third of the stop it may not be seen coasting.
-        let unseen = told.get(4) == Some(&RunState::Stopped) && f64::from(down) < 3.0 * every;
-        if unseen {
-            told.insert(4, RunState::Coasting);
+        // Between reports further apart than a third of a start or stop it may be over when it is first seen.
+        for (place, state, next, lasts) in [
+            (2, RunState::Starting, RunState::Running, up),
+            (4, RunState::Coasting, RunState::Stopped, down),
+        ] {
+            if told.get(place) == Some(&next) && f64::from(lasts) < 3.0 * every {
+                told.insert(place, state);
+            }
         }
         prop_assert_eq!(told, [
             RunState::Unknown,
