@@ -26,7 +26,7 @@ pub struct Way {
     seq: u64,
     latency: Draw,
     faults: Vec<AtWork>,
-    /// When the last block arrived that nothing held up: the next arrives after it.
+    /// When the last block would have arrived had nothing held it up: the next arrives after that.
     last_ns: i64,
     held: Option<Delivery>,
 }
@@ -102,9 +102,7 @@ impl Way {
         if lost {
             return;
         }
-        if late_ns == 0 {
-            self.last_ns = arrival_ns;
-        }
+        self.last_ns = arrival_ns;
         let delivery = Delivery {
             arrival_ns: arrival_ns.saturating_add(late_ns),
             topic: self.topic.clone(),
