@@ -5,7 +5,7 @@
 //! computed in f64, m/s², from closed forms; nothing here is shared with the daemon but the wire. The same scenario
 //! and seed give the same bytes on the same kind of machine.
 //!
-//! Every signal made here is simulated and says so. Checked by `tests/physics.rs` against closed form and by
+//! Recordings and plays say that they are simulated. Checked by `tests/physics.rs` against closed form and by
 //! `tests/physics.py` against scipy, never against the daemon's own analysis.
 
 pub mod cli;

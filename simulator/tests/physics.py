@@ -471,6 +471,10 @@ CHECKS = {
 
 def main():
     program, *wanted = sys.argv[1:]
+    listed = {row.split()[0] for row in subprocess.run([program, "list"], check=True, capture_output=True, text=True).stdout.splitlines() if row[:1].strip()}
+    if listed != set(CHECKS):
+        print(f"FAIL scenarios without checks, or checks without a scenario: {sorted(listed ^ set(CHECKS))}")
+        rows.append(False)
     print(f"{'':4} {'scenario':20} {'what':54} {'measured':>11} {'expected':>11} {'tolerance':>9}  source")
     with tempfile.TemporaryDirectory() as directory:
         for name, (function, options) in CHECKS.items():
