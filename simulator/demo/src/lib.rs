@@ -5,10 +5,12 @@
 //! else; the summary holds them against what the simulator injected. Everything is simulated and says so.
 //! Checked by `tests/first_minute.rs`, which listens at the same broker.
 
+pub mod banner;
 pub mod broker;
 pub mod cli;
 pub mod exit;
 pub mod fault;
+pub mod interrupts;
 pub mod listener;
 pub mod pace;
 pub mod page;

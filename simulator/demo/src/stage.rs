@@ -4,21 +4,22 @@
 //! (its last message says `offline`), listener. One thread prints.
 
 use std::io::Write;
-use std::sync::mpsc::{Receiver, RecvTimeoutError, Sender, channel};
+use std::sync::mpsc::{Receiver, RecvTimeoutError, channel};
 use std::thread;
 use std::time::{Duration, Instant};
 
 use humward::run::RunError;
 use humward_sim::play::{Happened, Pace, Summary};
-use humward_sim::scenario::{self, Scenario};
+use humward_sim::scenario;
 use humward_sim::world::World;
-use humward_wire::out::{GatewayState, Instant as At, Transition};
-use tokio::signal::unix::{SignalKind, signal};
+use humward_wire::out::{GatewayState, Transition};
 
+use crate::banner::{self, Banner};
 use crate::broker::Broker;
 use crate::cli::Arguments;
 use crate::exit::Exit;
 use crate::fault::DemoFault;
+use crate::interrupts;
 use crate::listener::{Heard, Listener};
 use crate::pace;
 use crate::page::{Ink, Page, wrap};
@@ -39,8 +40,12 @@ const OFFLINE_WITHIN: Duration = Duration::from_secs(10);
 const WHOLE_NS: i64 = 10_000_000_000;
 /// How often it is looked whether it is time.
 const LOOK: Duration = Duration::from_millis(50);
-/// How long the plant's time goes on after the last block, s: what the last readings say is still heard.
-const AFTER_S: f64 = 5.0;
+/// True time between the daemon's first word and the plant's first block at least: the plant is set up in it.
+const SET_UP: Duration = Duration::from_millis(100);
+/// True time that goes on after the last block: what the last readings say is still heard.
+const AFTER: Duration = Duration::from_millis(400);
+/// The plant's time within which that must be, s: sensors that have nothing more to send would soon be missed.
+const AFTER_S: (f64, f64) = (5.0, 20.0);
 
 /// What the parts of the demo tell the one that prints.
 #[derive(Debug)]
@@ -89,7 +94,7 @@ pub fn run(arguments: &Arguments, colour: bool, out: &mut dyn Write) -> Result<E
     let config = configuration(broker.port())?;
     let story = Story::new(config.topics().prefix());
     let (to, from) = channel();
-    interrupts(to.clone())?;
+    interrupts::watch(to.clone())?;
     let listener = Listener::start(
         "humward-demo-listener",
         broker.port(),
@@ -105,16 +110,18 @@ pub fn run(arguments: &Arguments, colour: bool, out: &mut dyn Write) -> Result<E
         played: false,
         behind: Duration::ZERO,
     };
-    let prefix = config.topics().prefix().to_owned();
-    stage.banner(&Banner {
-        scenario: &scenario,
-        port: broker.port(),
-        prefix: &prefix,
-        factor,
-        wanted: arguments.factor,
-        measured,
-        keep: arguments.keep,
-    })?;
+    banner::print(
+        &mut stage.page,
+        &Banner {
+            scenario: &scenario,
+            port: broker.port(),
+            prefix: config.topics().prefix(),
+            factor,
+            wanted: arguments.factor,
+            measured,
+            keep: arguments.keep,
+        },
+    )?;
 
     let origin_ns = scenario.start_ns() - WHOLE_NS;
     let pace = Pace::now(origin_ns, factor);
@@ -122,7 +129,7 @@ pub fn run(arguments: &Arguments, colour: bool, out: &mut dyn Write) -> Result<E
     let mut turn = stage.listen(Some(ONLINE_WITHIN), |stage| {
         stage.story.state() == Some(GatewayState::Online)
     })?;
-    let start_ns = next_whole(pace::now_ns(&pace));
+    let start_ns = next_whole(pace::now_ns(&pace) + plant_ns(SET_UP.as_secs_f64() * factor));
     let given = given(&scenario);
     let mut outcome = None;
     if turn == Turn::Come {
@@ -132,7 +139,8 @@ pub fn run(arguments: &Arguments, colour: bool, out: &mut dyn Write) -> Result<E
             World::starting(&scenario, start_ns)?
         };
         let player = Player::start(world, broker.port(), pace, to)?;
-        let over_ns = start_ns + ((scenario.duration.0 + AFTER_S) * 1e9) as i64;
+        let after_s = (AFTER.as_secs_f64() * factor).clamp(AFTER_S.0, AFTER_S.1);
+        let over_ns = start_ns + plant_ns(scenario.duration.0 + after_s);
         let keep = arguments.keep;
         turn = stage.listen(None, |stage| {
             pace::now_ns(&pace) >= over_ns && (keep || stage.played)
@@ -169,53 +177,14 @@ pub fn run(arguments: &Arguments, colour: bool, out: &mut dyn Write) -> Result<E
     }
 }
 
+/// Seconds of the plant's time in ns.
+const fn plant_ns(seconds: f64) -> i64 {
+    (seconds * 1e9) as i64
+}
+
 /// The next whole multiple of [`WHOLE_NS`] from `now_ns` on.
 const fn next_whole(now_ns: i64) -> i64 {
     now_ns + (WHOLE_NS - now_ns.rem_euclid(WHOLE_NS)) % WHOLE_NS
-}
-
-/// Tells of Ctrl-C and of the system's word to end, once.
-fn interrupts(to: Sender<Happening>) -> Result<(), DemoFault> {
-    let refused = |cause| DemoFault::System {
-        what: "signals",
-        cause,
-    };
-    let runtime = humward::run::runtime()?;
-    let (mut interrupt, mut terminate) = {
-        let _inside = runtime.enter();
-        (
-            signal(SignalKind::interrupt()).map_err(refused)?,
-            signal(SignalKind::terminate()).map_err(refused)?,
-        )
-    };
-    thread::Builder::new()
-        .name("signals".to_owned())
-        .spawn(move || {
-            runtime.block_on(async {
-                tokio::select! {
-                    _ = interrupt.recv() => {}
-                    _ = terminate.recv() => {}
-                }
-            });
-            // Nobody listens any more when the demo is at its end already.
-            drop(to.send(Happening::Interrupted));
-        })
-        .map_err(|cause| DemoFault::System {
-            what: "a thread",
-            cause,
-        })?;
-    Ok(())
-}
-
-/// What the banner tells.
-struct Banner<'a> {
-    scenario: &'a Scenario,
-    port: u16,
-    prefix: &'a str,
-    factor: f64,
-    wanted: f64,
-    measured: f64,
-    keep: bool,
 }
 
 /// What is printed and what was heard.
@@ -231,57 +200,6 @@ struct Stage<'a> {
 }
 
 impl Stage<'_> {
-    fn banner(&mut self, banner: &Banner<'_>) -> Result<(), DemoFault> {
-        let Banner {
-            scenario,
-            port,
-            prefix,
-            factor,
-            wanted,
-            measured,
-            keep,
-        } = *banner;
-        let about = format!(
-            "humward demo: {} Simulated; no such plant exists.",
-            scenario.about
-        );
-        self.page.text(&about)?;
-        let minutes = (scenario.duration.0 / 60.0).round();
-        let seconds = (scenario.duration.0 / factor).round();
-        self.page.text(&format!(
-            "One process: broker on 127.0.0.1:{port}, the daemon, {} simulated pump sets. \
-             {minutes} minutes of the plant from {} UTC pass in {seconds} s, {factor} times as fast as true time.",
-            scenario.assets.len(),
-            time_of_day(At(scenario.start_ns())),
-        ))?;
-        if factor < wanted {
-            self.page.text(&format!(
-                "This machine makes the plant {measured:.0} times as fast as true time: \
-                 {factor} instead of {wanted}."
-            ))?;
-        }
-        if keep {
-            self.page
-                .text("After the summary it runs on until Ctrl-C.")?;
-        }
-        self.page.text(
-            "Advisory only: not machinery protection, not a safety function. Below are the daemon's own messages. \
-             The raw topics, in a second terminal:",
-        )?;
-        let filter = |kind: &str| format!("-t '{prefix}{kind}/#'");
-        let lines = [
-            format!(
-                "  mosquitto_sub -h 127.0.0.1 -p {port} -v {} \\",
-                filter("event")
-            ),
-            format!("    {} \\", filter("status")),
-            format!("    {} {}", filter("alarm"), filter("gateway")),
-            String::new(),
-        ];
-        self.page.lines(&lines, Ink::Plain)?;
-        Ok(())
-    }
-
     /// Prints what comes until `until` holds.
     fn listen(
         &mut self,

@@ -13,7 +13,7 @@ pub fn lines(given: &[Given], story: &Story, start_ns: i64) -> Vec<String> {
     let mut lines = vec!["What was injected (from the simulator's own account):".to_owned()];
     lines.extend(table(2, &injected(given, start_ns)));
     lines.push(String::new());
-    lines.push("What was said:".to_owned());
+    lines.push("What was said, and how long after the onset:".to_owned());
     lines.extend(table(2, &said(given, story, start_ns)));
     lines.push(String::new());
     lines.push("What was not said:".to_owned());
@@ -73,7 +73,7 @@ fn said(given: &[Given], story: &Story, start_ns: i64) -> Vec<Vec<String>> {
                 || "nothing injected".to_owned(),
                 |cause| {
                     let after_ns = event.header.at.0 - start_ns - (cause.onset_s * 1e9) as i64;
-                    format!("{} after onset", span(after_ns / 1_000_000_000))
+                    format!("+{}", span(after_ns / 1_000_000_000))
                 },
             );
             vec![
