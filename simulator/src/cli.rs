@@ -13,7 +13,7 @@ use std::path::Path;
 use clap::{CommandFactory as _, FromArgMatches as _};
 
 use crate::exit::Exit;
-use crate::explain::{explain, words};
+use crate::explain::{explain, folded, words};
 use crate::render::{Target, render};
 use crate::scenario::{Scenario, catalogue, load, parse};
 use crate::truth;
@@ -72,16 +72,17 @@ fn dispatch(command: &Command, out: &mut dyn Write, err: &mut dyn Write) -> io::
 
 fn list(out: &mut dyn Write, err: &mut dyn Write) -> io::Result<Exit> {
     let entries = catalogue();
-    let widest = entries.iter().map(|entry| entry.name.len()).max();
+    let names = entries.iter().map(|entry| entry.name.len());
+    let width = names.max().unwrap_or_default();
     for entry in entries {
         match parse(entry.name, entry.text) {
-            Ok(scenario) => writeln!(
-                out,
-                "{:width$}  {}",
-                entry.name,
-                scenario.about,
-                width = widest.unwrap_or_default()
-            )?,
+            Ok(scenario) => {
+                let mut name = entry.name;
+                for line in folded(&scenario.about, 78 - width) {
+                    writeln!(out, "{name:width$}  {line}")?;
+                    name = "";
+                }
+            }
             Err(fault) => {
                 writeln!(err, "{fault}")?;
                 return Ok(Exit::Scenario);

@@ -60,8 +60,8 @@ pub fn explain(truth: &Truth) -> String {
     text
 }
 
-/// Words of `text` in lines of at most `width` characters.
-fn folded(text: &str, width: usize) -> Vec<String> {
+/// Words of `text` in lines of at most `width` characters; a longer word has a line of its own.
+pub(crate) fn folded(text: &str, width: usize) -> Vec<String> {
     let mut lines: Vec<String> = vec![String::new()];
     for word in text.split_whitespace() {
         let full = lines.last().is_some_and(|line| {

@@ -1,10 +1,6 @@
 //! The waves against closed forms: no daemon, no spectrum of ours, only sums written out here.
 
-#![expect(
-    clippy::unwrap_used,
-    clippy::panic,
-    reason = "a test stops at its first surprise"
-)]
+#![expect(clippy::panic, reason = "a test stops at its first surprise")]
 
 mod physics {
     mod bursts;

@@ -107,14 +107,17 @@ fn the_catalogue_is_listed_and_every_scenario_of_it_explained() {
     assert_eq!((code, fault.as_str()), (0, ""));
     let names: Vec<&str> = listed
         .lines()
+        .filter(|line| !line.starts_with(' '))
         .filter_map(|line| line.split_whitespace().next())
         .collect();
+    let narrow = |text: &str| text.lines().all(|line| line.chars().count() <= 80);
+    assert!(narrow(&listed), "{listed}");
     assert!(names.contains(&"imbalance-growing"), "{listed}");
     for name in names {
         let (code, text, fault) = told(&run(&["explain", name]));
         assert_eq!((code, fault.as_str()), (0, ""), "{name}");
         assert!(
-            text.starts_with(name) && text.contains("Simulated."),
+            text.starts_with(name) && text.contains("Simulated.") && narrow(&text),
             "{text}"
         );
     }

@@ -103,7 +103,7 @@ fn rectifier_ripple_is_that_of_an_ideal_bridge_within_1e_4() {
 /// every one.
 #[test]
 fn two_seeds_differ_in_the_level_of_every_background_line() {
-    assert!(BACKGROUND_LINES >= 20);
+    const { assert!(BACKGROUND_LINES >= 20) };
     let lines = |seed: u64| {
         let mut all = Vec::new();
         background(&Draw::new(seed).part("P-1").part("drive-end"))
