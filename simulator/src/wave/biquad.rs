@@ -69,6 +69,16 @@ impl Biquad {
         y
     }
 
+    /// Filters samples in place.
+    pub fn run_all(&mut self, samples: &mut [f64]) {
+        // On a copy: its state stays in registers.
+        let mut section = *self;
+        for sample in samples {
+            *sample = section.run(*sample);
+        }
+        *self = section;
+    }
+
     /// Response at `hz`.
     #[must_use]
     pub fn response(&self, hz: f64, rate_hz: f64) -> Complex64 {
@@ -104,11 +114,11 @@ impl Cascade {
         Cascade { sections, rate_hz }
     }
 
-    /// Filters one sample.
-    pub fn run(&mut self, x: f64) -> f64 {
-        self.sections
-            .iter_mut()
-            .fold(x, |x, section| section.run(x))
+    /// Filters samples in place.
+    pub fn run_all(&mut self, samples: &mut [f64]) {
+        for section in &mut self.sections {
+            section.run_all(samples);
+        }
     }
 
     /// Power response at `hz`.

@@ -115,7 +115,12 @@ pub struct Line {
 pub struct Lines {
     lines: Vec<Line>,
     path: Arc<Path>,
+    /// When the last stretch ended, and each line then: where the next begins.
+    ended: (f64, Vec<Moment>),
 }
+
+/// Level (m/s²) and phase (rad) of a line; `None` when it is not there.
+type Moment = Option<(f64, f64)>;
 
 const LANES: usize = 8;
 
@@ -123,11 +128,15 @@ impl Lines {
     /// Lines through `path`.
     #[must_use]
     pub fn new(lines: Vec<Line>, path: Arc<Path>) -> Lines {
-        Lines { lines, path }
+        Lines {
+            lines,
+            path,
+            ended: (f64::NAN, Vec::new()),
+        }
     }
 
     /// Level and phase (rad) of a line at one moment, unrest included.
-    fn moment(&self, line: &Line, state: &State) -> Option<(f64, f64)> {
+    fn moment(&self, line: &Line, state: &State) -> Moment {
         let factor = line.law.factor(state);
         if factor == 0.0 {
             return None;
@@ -145,6 +154,31 @@ impl Lines {
     }
 }
 
+/// A phasor and what it is multiplied by from sample to sample.
+#[derive(Clone, Copy, Debug)]
+struct Rotor {
+    now: Complex64,
+    step: Complex64,
+}
+
+/// Adds the real parts of up to eight rotors, side by side so that the processor turns several at once.
+fn turn(rotors: &[Rotor], out: &mut [f64]) {
+    let (mut re, mut im) = ([0.0; LANES], [0.0; LANES]);
+    let (mut step_re, mut step_im) = ([0.0; LANES], [0.0; LANES]);
+    for (lane, rotor) in rotors.iter().enumerate() {
+        (re[lane], im[lane]) = (rotor.now.re, rotor.now.im);
+        (step_re[lane], step_im[lane]) = (rotor.step.re, rotor.step.im);
+    }
+    for value in out.iter_mut() {
+        *value += ((re[0] + re[4]) + (re[2] + re[6])) + ((re[1] + re[5]) + (re[3] + re[7]));
+        for lane in 0..LANES {
+            let next = re[lane] * step_re[lane] - im[lane] * step_im[lane];
+            im[lane] = re[lane] * step_im[lane] + im[lane] * step_re[lane];
+            re[lane] = next;
+        }
+    }
+}
+
 impl Wave for Lines {
     fn add(&mut self, tick: &Tick, stretch: Stretch, out: &mut [f64]) {
         if stretch.count == 0 {
@@ -152,34 +186,44 @@ impl Wave for Lines {
         }
         let first = tick.at(stretch.first_s);
         let last = tick.at(stretch.at(stretch.count));
-        for chunk in self.lines.chunks(LANES) {
-            let (mut re, mut im) = ([0.0; LANES], [0.0; LANES]);
-            let (mut step_re, mut step_im) = ([0.0; LANES], [0.0; LANES]);
-            for (lane, line) in chunk.iter().enumerate() {
-                let Some((level, phase)) = self.moment(line, &first) else {
-                    continue;
-                };
-                let (end_level, end_phase) = self.moment(line, &last).unwrap_or((level, phase));
+        let follows = (stretch.first_s - self.ended.0).abs() < 1e-9;
+        let begun: Vec<Moment> = if follows {
+            std::mem::take(&mut self.ended.1)
+        } else {
+            self.lines
+                .iter()
+                .map(|line| self.moment(line, &first))
+                .collect()
+        };
+        let ended: Vec<Moment> = self
+            .lines
+            .iter()
+            .map(|line| self.moment(line, &last))
+            .collect();
+        let count = stretch.count as f64;
+        let ends = begun.iter().zip(&ended);
+        let rotors: Vec<Rotor> = self
+            .lines
+            .iter()
+            .zip(ends)
+            .filter_map(|(line, (begun, ended))| {
+                let (level, phase) = (*begun)?;
+                let (end_level, end_phase) = ended.unwrap_or((level, phase));
                 // Whole cycles between the two ends are what the pitch says; the rest is the phases' difference.
                 let expected = TAU * (line.pitch.cycles(&last) - line.pitch.cycles(&first));
                 let apart = end_phase - phase - expected;
                 let advance = expected + apart - TAU * (apart / TAU).round();
-                let count = stretch.count as f64;
-                let start = Complex64::from_polar(level, phase);
-                let step =
-                    Complex64::from_polar((end_level / level).powf(1.0 / count), advance / count);
-                (re[lane], im[lane]) = (start.re, start.im);
-                (step_re[lane], step_im[lane]) = (step.re, step.im);
-            }
-            for value in out.iter_mut() {
-                *value += re.iter().sum::<f64>();
-                for lane in 0..LANES {
-                    let next = re[lane] * step_re[lane] - im[lane] * step_im[lane];
-                    im[lane] = re[lane] * step_im[lane] + im[lane] * step_re[lane];
-                    re[lane] = next;
-                }
-            }
+                let gain = (end_level / level).powf(1.0 / count);
+                Some(Rotor {
+                    now: Complex64::from_polar(level, phase),
+                    step: Complex64::from_polar(gain, advance / count),
+                })
+            })
+            .collect();
+        for eight in rotors.chunks(LANES) {
+            turn(eight, out);
         }
+        self.ended = (stretch.at(stretch.count), ended);
     }
 
     fn lines(&self, state: &State, into: &mut Vec<Phasor>) {

@@ -70,13 +70,17 @@ fn velocity_of_unit(filter: &Cascade) -> f64 {
 #[derive(Clone, Debug)]
 pub struct Noise {
     voices: Vec<Voice>,
+    buffer: Vec<f64>,
 }
 
 impl Noise {
     /// Voices together.
     #[must_use]
     pub fn new(voices: Vec<Voice>) -> Noise {
-        Noise { voices }
+        Noise {
+            voices,
+            buffer: Vec::new(),
+        }
     }
 }
 
@@ -87,13 +91,19 @@ impl Wave for Noise {
             if end == 0.0 && voice.level == 0.0 {
                 continue;
             }
+            self.buffer.clear();
+            let normals = core::iter::repeat_with(|| voice.draw.normal());
+            self.buffer.extend(normals.take(stretch.count));
+            voice.filter.run_all(&mut self.buffer);
+            if let Some((order, depth)) = voice.modulation {
+                for (index, value) in self.buffer.iter_mut().enumerate() {
+                    let turns = tick.at(stretch.at(index)).turns;
+                    *value *= 1.0 + depth * (TAU * order * turns).cos();
+                }
+            }
             let slope = (end - voice.level) / stretch.count.max(1) as f64;
-            for (index, value) in out.iter_mut().enumerate() {
-                voice.level += slope;
-                let breath = voice.modulation.map_or(1.0, |(order, depth)| {
-                    1.0 + depth * (TAU * order * tick.at(stretch.at(index)).turns).cos()
-                });
-                *value += voice.level * breath * voice.filter.run(voice.draw.normal());
+            for (index, (value, noise)) in out.iter_mut().zip(&self.buffer).enumerate() {
+                *value += (voice.level + slope * (index + 1) as f64) * noise;
             }
             voice.level = end;
         }
