@@ -44,7 +44,7 @@ pub enum DemoFault {
     Daemon(#[from] RunError),
     /// The daemon did not say that it watches.
     #[error(
-        "the daemon did not say within {seconds} s that it watches; set HUMWARD_LOG=info to see what it does"
+        "the daemon did not say within {seconds} s that it watches; set HUMWARD_LOG=humward=info to see what it does"
     )]
     NotOnline {
         /// How long it was waited for.
@@ -52,7 +52,7 @@ pub enum DemoFault {
     },
     /// The daemon was stopped and did not say so.
     #[error(
-        "the daemon did not say within {seconds} s that it is gone; set HUMWARD_LOG=info to see what it does"
+        "the daemon did not say within {seconds} s that it is gone; set HUMWARD_LOG=humward=info to see what it does"
     )]
     NotOffline {
         /// How long it was waited for.

@@ -1,5 +1,6 @@
 //! The simulator on a thread of its own, at the plant's pace, through the same `play` as `humward-sim play`.
 
+use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::sync::mpsc::Sender;
 use std::thread::{self, JoinHandle};
 
@@ -33,10 +34,16 @@ impl Player {
             .name("simulator".to_owned())
             .spawn(move || {
                 let told = to.clone();
-                let played = run(world, port, pace, stopped, move |happened| {
+                let tell = move |happened: &Happened| {
                     // The one that prints ends after us, or does not care any more.
                     drop(told.send(Happening::Playing(happened.clone())));
-                });
+                };
+                // Nobody would hear of a thread that broke down in silence.
+                let played =
+                    catch_unwind(AssertUnwindSafe(|| run(world, port, pace, stopped, tell)))
+                        .unwrap_or_else(
+                            |_| Err("it broke down; its last words stand above".into()),
+                        );
                 drop(to.send(Happening::Played(played)));
             })
             .map_err(|cause| DemoFault::System {
@@ -48,7 +55,7 @@ impl Player {
 
     /// Stops it and waits until it has said goodbye to the broker.
     pub fn end(self) {
-        // It may be over already, and a thread that broke down has told so by the message it did not send.
+        // It may be over already, and has told how it ended.
         let _ = self.stop.send(());
         drop(self.thread.join());
     }

@@ -170,8 +170,10 @@ pub fn run(arguments: &Arguments, colour: bool, out: &mut dyn Write) -> Result<E
     match outcome {
         Some(exit) => Ok(exit),
         None => {
-            stage.summary(&given, start_ns)?;
-            stage.page.text("Broken off before its end.")?;
+            stage.tables(&given, start_ns)?;
+            stage
+                .page
+                .text("Broken off before its end: whether it came out as meant is not known.")?;
             Ok(Exit::Otherwise)
         }
     }
@@ -217,7 +219,12 @@ impl Stage<'_> {
             match self.from.recv_timeout(LOOK) {
                 Ok(Happening::Heard(heard)) => self.tell(&heard)?,
                 Ok(Happening::Lost(why)) => return Err(DemoFault::Listener(why)),
-                Ok(Happening::Played(Ok(_))) => self.played = true,
+                Ok(Happening::Played(Ok(summary))) => {
+                    self.played = true;
+                    if !self.behind.is_zero() {
+                        self.behind = summary.latest;
+                    }
+                }
                 Ok(Happening::Playing(Happened::Lost { why, .. })) => {
                     return Err(DemoFault::Simulator(why.to_string()));
                 }
@@ -280,8 +287,8 @@ impl Stage<'_> {
         Ok(())
     }
 
-    /// Prints the summary and says how the story came out.
-    fn summary(&mut self, given: &[Given], start_ns: i64) -> Result<Exit, DemoFault> {
+    /// Prints what was injected, said and not said, and how it went.
+    fn tables(&mut self, given: &[Given], start_ns: i64) -> std::io::Result<()> {
         let mut lines = vec![String::new()];
         lines.extend(summary::lines(given, &self.story, start_ns));
         lines.push(String::new());
@@ -289,7 +296,7 @@ impl Stage<'_> {
         if !self.behind.is_zero() {
             let late = self.behind.as_secs_f64();
             lines.extend(wrap("", 0, &format!(
-                "The simulator came {late:.1} s too late at worst: this machine has other work; take a smaller --factor."
+                "The simulator came {late:.1} s too late: this machine has other work; take a smaller --factor."
             )));
         }
         let first = self.first_alarm.map_or_else(
@@ -307,7 +314,12 @@ impl Stage<'_> {
             0,
             &format!("{first}; this summary, {whole:.0} s after it."),
         ));
-        self.page.lines(&lines, Ink::Plain)?;
+        self.page.lines(&lines, Ink::Plain)
+    }
+
+    /// Prints the summary and says how the story came out.
+    fn summary(&mut self, given: &[Given], start_ns: i64) -> Result<Exit, DemoFault> {
+        self.tables(given, start_ns)?;
         let differences = differences(given, &self.story, start_ns);
         if differences.is_empty() {
             self.page.text("The story came out as meant.")?;

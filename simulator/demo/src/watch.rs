@@ -1,5 +1,6 @@
 //! The daemon itself, on a thread of its own: the same `serve` that `humward run` calls.
 
+use std::panic::{AssertUnwindSafe, catch_unwind};
 use std::path::Path;
 use std::sync::mpsc::Sender;
 use std::thread::{self, JoinHandle};
@@ -53,15 +54,17 @@ impl Watch {
         let thread = thread::Builder::new()
             .name("daemon".to_owned())
             .spawn(move || {
-                let ended = runtime().and_then(|runtime| {
-                    runtime.block_on(serve(config, clock, async {
-                        // The demo dropping its end means the same as a word.
-                        drop(stopped.await);
-                    }))
-                });
+                let ended = catch_unwind(AssertUnwindSafe(|| {
+                    runtime().and_then(|runtime| {
+                        runtime.block_on(serve(config, clock, async {
+                            // The demo dropping its end means the same as a word.
+                            drop(stopped.await);
+                        }))
+                    })
+                }));
                 // Nobody listens any more when the demo has asked for the end.
                 drop(to.send(Happening::DaemonEnded));
-                ended
+                ended.unwrap_or(Err(RunError::PartEnded { part: "the daemon" }))
             })
             .map_err(|cause| DemoFault::System {
                 what: "a thread",

@@ -165,7 +165,11 @@ fn the_command_of_the_banner_names_each_kind_of_message_and_no_block() {
     }
     assert!(!command.contains("block"), "{command}");
     // Broken off is told, with an exit of its own.
-    assert!(rest.ends_with("Broken off before its end.\n"), "{rest}");
+    assert!(
+        rest.ends_with("Broken off before its end: whether it came out as meant is not known.\n"),
+        "{rest}"
+    );
+    assert!(!rest.contains("The story"), "nothing is concluded: {rest}");
     assert_eq!(status.code(), Some(1));
 }
 
