@@ -137,7 +137,8 @@ impl RunningState {
     /// a start, since a ramp may be unseen.
     pub(super) fn by_signal(&mut self, spec: &AssetSpec, at: SignalTime, runs: bool) -> bool {
         if !runs {
-            return self.turn(Operating::Stopped, at);
+            let rpm = self.rpm(at, spec.running.speed_valid);
+            return self.unpowered(spec, at, rpm.unwrap_or_default());
         }
         match self.state {
             Operating::Unknown | Operating::Stopped => self.turn(Operating::Starting, at),
@@ -170,7 +171,7 @@ impl RunningState {
             Some(report) => changed |= self.by_speed(spec, report.rpm, now, signal),
             None if signal == Some(true) => changed |= self.by_signal_alone(spec, now),
             None if signal.is_none() => return None,
-            None => {}
+            None => changed |= self.turn(Operating::Stopped, now),
         }
         Some(changed)
     }
@@ -211,7 +212,7 @@ impl RunningState {
     ) -> bool {
         let turns = rpm >= spec.running.from_rpm && rpm > 0.0;
         match (signal, turns) {
-            (Some(false), _) => return false,
+            (Some(false), _) => return self.unpowered(spec, now, rpm),
             (Some(true), false) => return self.by_signal_alone(spec, now),
             (None, false) => return self.turn(Operating::Stopped, now),
             (Some(true) | None, true) => {}
@@ -244,6 +245,16 @@ impl RunningState {
             (_, _, Course::Falling) => self.turn(Operating::Coasting, now),
             (_, _, Course::Steady) => false,
         }
+    }
+
+    /// The run signal says it does not run: what still turns coasts until it stands. What stood stays so, whatever
+    /// turns it.
+    fn unpowered(&mut self, spec: &AssetSpec, now: SignalTime, rpm: f64) -> bool {
+        let turns = rpm >= spec.running.from_rpm && rpm > 0.0;
+        if turns && self.state != Operating::Stopped {
+            return self.turn(Operating::Coasting, now);
+        }
+        self.turn(Operating::Stopped, now)
     }
 
     /// The run signal says it runs and no speed tells how: what changes does so for the time the plan states.

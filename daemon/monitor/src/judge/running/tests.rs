@@ -186,13 +186,19 @@ fn a_run_signal_alone_starts_for_30_s_and_then_runs() {
 }
 
 #[test]
-fn a_run_signal_that_says_no_stops_it_and_a_dead_tacho_does_not() {
+fn a_run_signal_that_says_no_lets_it_coast_to_standstill_and_a_dead_tacho_does_not() {
     let mut machine = Machine::new(10);
     let spec = machine.spec.clone();
     machine.speed(0.0, 1480.0);
     assert!(machine.state.by_signal(&spec, at(5.0), false));
-    machine.speed_under(6.0, 1480.0, Some(false));
+    machine.speed_under(6.0, 1400.0, Some(false));
+    assert_eq!(machine.state.state(), Coasting);
+    machine.speed_under(7.0, 100.0, Some(false));
+    machine.speed_under(8.0, 90.0, Some(false));
     assert_eq!(machine.state.state(), Stopped);
+    machine.speed_under(9.0, 1400.0, Some(false));
+    machine.speed_under(9.5, 1400.0, Some(false));
+    assert_eq!(machine.state.state(), Stopped, "turned by the flow");
     assert!(machine.state.by_signal(&spec, at(10.0), true));
     for s in 11..45 {
         machine.speed_under(f64::from(s), 0.0, Some(true));
