@@ -105,10 +105,9 @@ fn without_clock(json: &[u8], shift_ns: i64) -> Event {
     let mut event = Event::from_json(json).expect("an event of ours");
     event.header.at.0 -= shift_ns;
     let finding = &mut event.finding;
-    for since in [&mut finding.since, &mut finding.running.since] {
-        if let Some(since) = since {
-            since.0 -= shift_ns;
-        }
+    let both = [&mut finding.since, &mut finding.running.since];
+    for since in both.into_iter().flatten() {
+        since.0 -= shift_ns;
     }
     event.finding.text.clear();
     event
