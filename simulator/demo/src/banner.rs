@@ -53,17 +53,17 @@ pub fn print(page: &mut Page<'_>, banner: &Banner<'_>) -> std::io::Result<()> {
     ))?;
     if factor < wanted {
         page.text(&format!(
-            "This machine makes the plant {measured:.0} times as fast as true time: \
-             {factor} instead of {wanted}."
+            "This machine makes the plant's signals at most {measured:.0} times as fast as true time; \
+             with room for the daemon that is {factor}, not {wanted}."
         ))?;
     }
     if keep {
         page.text("After the summary it runs on until Ctrl-C.")?;
     }
     page.text(
-        "Advisory only: not machinery protection, not a safety function. Below are the daemon's own messages. \
-         The raw topics, in a second terminal:",
+        "Advisory only: not machinery protection, not a safety function. Below are the daemon's own messages.",
     )?;
+    page.text("The raw topics, in a second terminal:")?;
     let filter = |kind: &str| format!("-t '{prefix}{kind}/#'");
     let lines = [
         format!(

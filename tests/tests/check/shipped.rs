@@ -24,7 +24,7 @@ fn every_file_in_config_checks_clean() {
         .iter()
         .map(|path| path.file_name().unwrap().to_string_lossy().into_owned())
         .collect();
-    for name in ["example.toml", "minimal.toml", "zones.toml"] {
+    for name in ["example.toml", "harbour.toml", "minimal.toml", "zones.toml"] {
         assert!(
             names.iter().any(|there| there == name),
             "{name} among {names:?}"
@@ -43,6 +43,20 @@ fn the_minimal_asset_has_six_lines() {
     assert_eq!(
         text.lines().filter(|line| !line.starts_with('#')).count(),
         6
+    );
+}
+
+#[test]
+fn an_asset_of_which_only_the_sensors_are_watched_is_told() {
+    let path = root().join("config/minimal.toml");
+    let said = command(&["check", &path.to_string_lossy()], &[]);
+    assert!(
+        said.out.ends_with(
+            "not watched:\n  P-103A: only its sensors are watched, nothing about the machine; \
+             give it zones, a bearing or a [[watch]]\n"
+        ),
+        "{}",
+        said.out
     );
 }
 

@@ -118,7 +118,16 @@ pub(crate) fn read<'t>(
         points,
         watches: watches.iter().map(|(_, plan)| plan.clone()).collect(),
     };
-    let (plan, notes) = plan(spec, watches, &made, site, gather);
+    let (plan, mut notes) = plan(spec, watches, &made, site, gather);
+    if plan
+        .as_ref()
+        .is_some_and(|plan| plan.spec().watches.is_empty())
+    {
+        notes.push(format!(
+            "{}: only its sensors are watched, nothing about the machine; give it zones, a bearing or a [[watch]]",
+            made.id
+        ));
+    }
     made.plan = plan;
     made.notes = notes;
     known.map(|_| made)
