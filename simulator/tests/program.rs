@@ -258,6 +258,36 @@ fn every_value_that_does_not_fit_is_told_in_one_run_with_what_is_allowed() {
 }
 
 #[test]
+fn numbers_that_are_none_are_refused_wherever_toml_lets_them_stand() {
+    for (from, to, told) in [
+        (
+            "rpm = ",
+            "rpm = nan #",
+            "rpm is NaN; allowed: 30 to 60000 r/min",
+        ),
+        (
+            "rpm = ",
+            "motor = { kind = \"rectifier\", firing_deg = inf }\nrpm = ",
+            "motor.firing_deg is inf; allowed: 0 to 150 degrees",
+        ),
+        (
+            "rpm = ",
+            "motor = { kind = \"induction\", poles = 0 }\nrpm = ",
+            "motor.poles is 0; allowed: 2 to 48\n",
+        ),
+        (
+            "rpm = ",
+            "load = { walk = nan }\nrpm = ",
+            "load.walk is NaN; allowed: 0 to 0.5\n",
+        ),
+    ] {
+        let (code, _, fault) = explain(&SMALL.replace(from, to));
+        assert_eq!(code, 1, "{to}");
+        assert!(fault.contains(told), "{told:?} is not in {fault}");
+    }
+}
+
+#[test]
 fn a_block_too_large_for_a_message_is_refused() {
     let long = "rate_hz = 50000\nblock = \"5s\"\nencoding = \"json\"";
     let (code, _, fault) = explain(&SMALL.replace("rate_hz = 1000", long));

@@ -85,8 +85,10 @@ pub(crate) fn within(
     unit: &str,
 ) {
     if !(low..=high).contains(&value) {
+        let allowed = format!("{low} to {high} {unit}");
         faults.push(format!(
-            "{what} is {value}; allowed: {low} to {high} {unit}"
+            "{what} is {value}; allowed: {}",
+            allowed.trim_end()
         ));
     }
 }
@@ -113,6 +115,9 @@ fn check(scenario: &Scenario, faults: &mut Vec<String>) {
     }
     within(faults, "duration", scenario.duration.0, 1.0, 32e6, "s");
     within(faults, "line_hz", scenario.line_hz, 10.0, 400.0, "Hz");
+    for level in &scenario.levels_mm_s {
+        within(faults, "levels_mm_s", *level, 1e-3, 1e3, "mm/s rms");
+    }
     within(faults, "foundation", scenario.foundation, 0.0, 1.0, "");
     if scenario.assets.is_empty() {
         faults.push("no asset; add at least one [[asset]] with a [[asset.point]]".to_owned());
@@ -131,118 +136,57 @@ fn check(scenario: &Scenario, faults: &mut Vec<String>) {
 fn check_asset(scenario: &Scenario, asset: &Asset, faults: &mut Vec<String>) {
     let id = &asset.id;
     is_id(faults, "asset id", id);
-    within(
-        faults,
-        &format!("asset {id}: rpm"),
-        asset.rpm,
-        30.0,
-        60_000.0,
-        "r/min",
-    );
-    within(
-        faults,
-        &format!("asset {id}: wander_percent"),
-        asset.wander_percent,
-        0.0,
-        5.0,
-        "%",
-    );
-    within(
-        faults,
-        &format!("asset {id}: velocity_mm_s"),
-        asset.velocity_mm_s,
-        0.01,
-        50.0,
-        "mm/s rms",
-    );
-    within(
-        faults,
-        &format!("asset {id}: vanes"),
-        f64::from(asset.vanes),
-        2.0,
-        20.0,
-        "",
-    );
-    within(
-        faults,
-        &format!("asset {id}: load.mean"),
-        asset.load.mean,
-        0.05,
-        1.4,
-        "",
-    );
-    within(
-        faults,
-        &format!("asset {id}: load.over"),
-        asset.load.over.0,
-        1.0,
-        1e6,
-        "s",
-    );
-    for pair in asset.schedule.windows(2) {
-        if pair[0].0 >= pair[1].0 {
-            faults.push(format!(
-                "asset {id}: schedule goes back at {} s; times must grow",
-                pair[1].0.0
-            ));
-        }
+    let mut numbers = vec![
+        ("rpm", asset.rpm, 30.0, 60_000.0, "r/min"),
+        ("wander_percent", asset.wander_percent, 0.0, 5.0, "%"),
+        ("velocity_mm_s", asset.velocity_mm_s, 0.01, 50.0, "mm/s rms"),
+        ("vanes", f64::from(asset.vanes), 2.0, 20.0, ""),
+        ("load.mean", asset.load.mean, 0.05, 1.4, ""),
+        ("load.walk", asset.load.walk, 0.0, 0.5, ""),
+        ("load.over", asset.load.over.0, 1.0, 1e6, "s"),
+    ];
+    let rpms = asset.schedule.iter();
+    numbers.extend(rpms.map(|(_, rpm)| ("schedule", *rpm, 0.0, 60_000.0, "r/min")));
+    if let Some(sway) = asset.sway {
+        numbers.push(("sway.percent", sway.percent, 0.0, 20.0, "%"));
+        numbers.push(("sway.period", sway.period.0, 1.0, 1e6, "s"));
     }
-    for (_, rpm) in &asset.schedule {
-        within(
-            faults,
-            &format!("asset {id}: schedule"),
-            *rpm,
+    if let Some(motor) = asset.motor {
+        numbers.push(("motor.poles", f64::from(motor.poles), 2.0, 48.0, ""));
+        numbers.push((
+            "motor.electrical_mm_s",
+            motor.electrical_mm_s,
             0.0,
-            60_000.0,
-            "r/min",
-        );
+            50.0,
+            "mm/s rms",
+        ));
+        numbers.push(("motor.firing_deg", motor.firing_deg, 0.0, 150.0, "degrees"));
     }
     if let Some(slip) = asset.slip_at(scenario.line_hz) {
-        within(
-            faults,
-            &format!("asset {id}: slip of its motor at {} r/min", asset.rpm),
+        numbers.push((
+            "slip of its motor at rpm, line_hz and poles",
             slip,
             0.0,
             0.1,
             "",
-        );
-    }
-    if let Some(sway) = asset.sway {
-        within(
-            faults,
-            &format!("asset {id}: sway.percent"),
-            sway.percent,
-            0.0,
-            20.0,
-            "%",
-        );
-        within(
-            faults,
-            &format!("asset {id}: sway.period"),
-            sway.period.0,
-            1.0,
-            1e6,
-            "s",
-        );
+        ));
     }
     if let Some(every) = asset.speed_every {
-        within(
-            faults,
-            &format!("asset {id}: speed_every"),
-            every.0,
-            0.1,
-            3600.0,
-            "s",
-        );
+        numbers.push(("speed_every", every.0, 0.1, 3600.0, "s"));
     }
     if let Some(process) = &asset.process {
+        numbers.push(("process.every", process.every.0, 0.1, 3600.0, "s"));
+        let flow = process.flow_m3_h.unwrap_or_default();
+        numbers.push(("process.flow_m3_h", flow, 0.0, 1e6, "m3/h"));
+    }
+    for (key, value, low, high, unit) in numbers {
         within(
             faults,
-            &format!("asset {id}: process.every"),
-            process.every.0,
-            0.1,
-            3600.0,
-            "s",
+            &format!("asset {id}: {key}"),
+            value,
+            low,
+            high,
+            unit,
         );
     }
     if let Some(run) = asset
@@ -252,15 +196,13 @@ fn check_asset(scenario: &Scenario, asset: &Asset, faults: &mut Vec<String>) {
     {
         is_id(faults, &format!("asset {id}: process.run"), run);
     }
-    if let Some(flow) = asset.process.as_ref().and_then(|process| process.flow_m3_h) {
-        within(
-            faults,
-            &format!("asset {id}: process.flow_m3_h"),
-            flow,
-            0.0,
-            1e6,
-            "m3/h",
-        );
+    for pair in asset.schedule.windows(2) {
+        if pair[0].0 >= pair[1].0 {
+            faults.push(format!(
+                "asset {id}: schedule goes back at {} s; times must grow",
+                pair[1].0.0
+            ));
+        }
     }
     if asset.points.is_empty() {
         faults.push(format!("asset {id}: no point; add a [[asset.point]]"));
