@@ -276,7 +276,11 @@ impl AssetJudge {
         self.latest[point] = Some(reading.clone());
         if judged && self.judging_goes_on(context, &reading, actions) {
             for index in 0..self.watches.len() {
-                if context.plan.spec().watches[index].spec().point == point
+                let here = context.plan.spec().watches[index].spec().point == point;
+                if here {
+                    self.watches[index].disarm();
+                }
+                if here
                     && let Some(change) =
                         self.watches[index].judge(&context.plan.spec().watches[index], &reading)
                 {
@@ -287,7 +291,7 @@ impl AssetJudge {
                     self.watch_changed(context, index, &reading, turn, traces, actions);
                 }
             }
-        } else if !judged {
+        } else {
             self.judge_armed(context, point, &reading, traces, actions);
         }
     }

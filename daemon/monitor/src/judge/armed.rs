@@ -1,12 +1,15 @@
-//! Danger while a machine starts or coasts: what is absolute and in rms stays armed at a multiple of its limit.
+//! Danger while running limits do not hold: what is absolute and in rms stays armed at a multiple of its limit.
 //!
-//! In: readings that running limits do not judge. Out: at most one ring per watch and start. A start is judged by
-//! every reading that is believable or a lower bound, credited with the part of it that lies in the start; a coasting
-//! machine by lower bounds alone. What rings leaves being held; running limits take over when judging goes on.
+//! In: readings that running limits do not judge while the machine turns: it starts or coasts, or its speed moves or
+//! is not sure. Out: at most one ring per watch until it stands or is judged again. Every reading counts that is
+//! believable or a lower bound, credited with the part of it in which the machine turned; a machine that has begun to
+//! coast is judged by lower bounds alone for two minutes, as it may pass a resonance on its way to standstill. A speed
+//! that hunts, so that starting and coasting follow each other, keeps the credit. What rings leaves being held; running
+//! limits take over when judging goes on.
 
 use alloc::vec::Vec;
 
-use super::{AssetJudge, Context, Operating, announce::Turn};
+use super::{AssetJudge, Context, Operating, announce::Turn, running::Unsettled};
 use crate::{action::Action, analysis::Traces, plan::Persistence, reading::Reading};
 
 /// The limit a watch was armed at when it rang.
@@ -16,7 +19,7 @@ pub(super) struct Armed {
     pub(super) limit: f64,
     /// The multiple of danger it is.
     pub(super) factor: f64,
-    /// Whether the machine was starting or coasting.
+    /// What the machine was doing.
     pub(super) during: Operating,
 }
 
@@ -25,9 +28,8 @@ impl Armed {
     pub(super) const fn during(&self) -> &'static str {
         match self.during {
             Operating::Coasting => "coasting",
-            Operating::Unknown | Operating::Stopped | Operating::Starting | Operating::Running => {
-                "starting"
-            }
+            Operating::Running => "its speed is unsteady",
+            Operating::Unknown | Operating::Stopped | Operating::Starting => "starting",
         }
     }
 }
@@ -43,11 +45,14 @@ impl AssetJudge {
         actions: &mut Vec<Action>,
     ) {
         let spec = context.plan.spec();
-        let Some((during, from, to)) = self.running.changing(reading.start, reading.end) else {
+        let Some(unsettled) = self.running.unsettled(reading.start, reading.end) else {
             return;
         };
+        let Unsettled {
+            during, from, to, ..
+        } = unsettled;
         let bound = reading.doubts.is_a_bound();
-        let judged = bound || (during == Operating::Starting && reading.doubts.only_moving());
+        let judged = bound || (reading.doubts.only_moving() && !unsettled.passing);
         if !judged {
             return;
         }

@@ -31,8 +31,26 @@ pub enum Operating {
 const STOPPED_SHARE: f64 = 0.7;
 /// Below this share of the lowest speed it does not run yet, or no more. Common practice, no source.
 const IN_RANGE_SHARE: f64 = 0.9;
+/// A machine on its way to standstill passes its resonances within this time; what changes for longer is no stop.
+/// Common practice, no source.
+const COASTS_LONG: Span = Span::from_secs(120);
+/// A run signal that falls while the speed keeps its range is a drop-out until it has stood so long.
+const SIGNAL_FALLS: Span = Span::from_secs(10);
 /// Below that range a speed must hold still for at least so long: what coasts slowly does not.
 const BELOW_RANGE_HOLDS: Span = Span::from_secs(60);
+
+/// A part of a reading in which the machine turned and running limits may not hold.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) struct Unsettled {
+    /// What the machine was doing.
+    pub(super) during: Operating,
+    /// The part's beginning.
+    pub(super) from: SignalTime,
+    /// Its end.
+    pub(super) to: SignalTime,
+    /// It may be on its way to standstill: a resonance passed then is nothing to ring about.
+    pub(super) passing: bool,
+}
 
 /// The operating state of one asset.
 #[derive(Debug, Clone, PartialEq, Default)]
@@ -41,6 +59,10 @@ pub(super) struct RunningState {
     since: Option<SignalTime>,
     /// What it was doing before, and since when.
     before: Option<(Operating, SignalTime)>,
+    /// Since when it has started or coasted without running or standing in between.
+    changing: Option<SignalTime>,
+    /// Since when the run signal says that it does not run.
+    fell: Option<SignalTime>,
     trend: Trend,
 }
 
@@ -68,28 +90,37 @@ impl RunningState {
             && !self.trend.unsure()
     }
 
-    /// The part of `start` to `end` in which it was starting or coasting: the present state, or a start just over.
-    pub(super) fn changing(
-        &self,
-        start: SignalTime,
-        end: SignalTime,
-    ) -> Option<(Operating, SignalTime, SignalTime)> {
+    /// The part of `start` to `end` in which the machine turned and running limits may not hold: it was starting or
+    /// coasting, or its speed moved or was not sure.
+    pub(super) fn unsettled(&self, start: SignalTime, end: SignalTime) -> Option<Unsettled> {
         let since = self.since?;
-        let (state, from, to) = match (self.state, self.before) {
-            (Operating::Starting | Operating::Coasting, _) => (self.state, since, end),
-            (Operating::Running, Some((Operating::Starting, from))) => {
-                (Operating::Starting, from, since)
+        let (state, from) = match (self.state, self.before) {
+            (Operating::Unknown | Operating::Stopped, _) => return None,
+            (Operating::Running, Some((Operating::Starting, from))) if since > start => {
+                (Operating::Starting, from)
             }
-            _ => return None,
+            (Operating::Starting | Operating::Coasting | Operating::Running, _) => {
+                (self.state, since)
+            }
         };
-        let (from, to) = (from.max(start), to.min(end));
-        (from < to).then_some((state, from, to))
+        let from = from.max(start);
+        let long = self
+            .changing
+            .is_some_and(|began| end.since(began) >= COASTS_LONG);
+        (from < end).then_some(Unsettled {
+            during: state,
+            from,
+            to: end,
+            passing: state == Operating::Coasting && !long,
+        })
     }
 
     /// Our clock was set, `forward` or `back`: what was told by clocks that follow it moves back with it.
     pub(super) fn wall_clock_set(&mut self, forward: Span, back: Span) {
         self.since = self.since.map(|since| since.minus(back));
         self.before = self.before.map(|(state, since)| (state, since.minus(back)));
+        self.changing = self.changing.map(|since| since.minus(back));
+        self.fell = self.fell.map(|since| since.minus(back));
         self.trend.wall_clock_set(forward, back);
     }
 
@@ -140,6 +171,7 @@ impl RunningState {
             let rpm = self.rpm(at, spec.running.speed_valid);
             return self.unpowered(spec, at, rpm.unwrap_or_default());
         }
+        self.fell = None;
         match self.state {
             Operating::Unknown | Operating::Stopped => self.turn(Operating::Starting, at),
             Operating::Starting | Operating::Running | Operating::Coasting => {
@@ -247,14 +279,24 @@ impl RunningState {
         }
     }
 
-    /// The run signal says it does not run: what still turns coasts until it stands. What stood stays so, whatever
-    /// turns it.
+    /// The run signal says it does not run: what still turns coasts until it stands. A signal that drops out while the
+    /// speed keeps its range must have fallen for [`SIGNAL_FALLS`]; what stood and turns below its range, by the flow,
+    /// stays so, what turns in its range does not stand, whatever the signal says.
     fn unpowered(&mut self, spec: &AssetSpec, now: SignalTime, rpm: f64) -> bool {
+        let fell = *self.fell.get_or_insert(now);
         let turns = rpm >= spec.running.from_rpm && rpm > 0.0;
-        if turns && self.state != Operating::Stopped {
-            return self.turn(Operating::Coasting, now);
+        let in_range = turns && rpm >= IN_RANGE_SHARE * spec.speed.lowest;
+        let drop_out = self.state == Operating::Running && now.since(fell) < SIGNAL_FALLS;
+        let stood = self.state == Operating::Stopped;
+        if (drop_out && in_range) || (stood && !in_range) {
+            return false;
         }
-        self.turn(Operating::Stopped, now)
+        let to = if turns {
+            Operating::Coasting
+        } else {
+            Operating::Stopped
+        };
+        self.turn(to, now)
     }
 
     /// The run signal says it runs and no speed tells how: what changes does so for the time the plan states.
@@ -275,6 +317,14 @@ impl RunningState {
     fn turn(&mut self, to: Operating, at: SignalTime) -> bool {
         let changed = self.state != to;
         if changed {
+            match to {
+                Operating::Unknown | Operating::Stopped | Operating::Running => {
+                    self.changing = None;
+                }
+                Operating::Starting | Operating::Coasting => {
+                    self.changing.get_or_insert(at);
+                }
+            }
             self.before = self.since.map(|since| (self.state, since));
             self.state = to;
             self.since = Some(at);

@@ -59,11 +59,16 @@ impl AssetJudge {
         self.changed = true;
         let runs = self.running.state() == Operating::Running;
         if !runs {
+            let stands = self.running.state() == Operating::Stopped;
+            let held = self.judging == Judging::Suspended && !stands;
             self.judging = Judging::Suspended;
-            for watch in &mut self.watches {
-                watch.disarm();
+            if stands {
+                for watch in &mut self.watches {
+                    watch.disarm();
+                }
             }
-            if self.watches.iter().any(WatchState::rings) {
+            // What rang by an armed limit rings on while starting and coasting follow each other.
+            if !held && self.watches.iter().any(WatchState::rings) {
                 self.hold_all(true);
                 self.asset_event(context, message::AssetChange::Suspended, actions);
             }

@@ -190,17 +190,24 @@ fn a_run_signal_that_says_no_lets_it_coast_to_standstill_and_a_dead_tacho_does_n
     let mut machine = Machine::new(10);
     let spec = machine.spec.clone();
     machine.speed(0.0, 1480.0);
-    assert!(machine.state.by_signal(&spec, at(5.0), false));
-    machine.speed_under(6.0, 1400.0, Some(false));
+    assert!(!machine.state.by_signal(&spec, at(5.0), false));
+    machine.speed_under(14.0, 1480.0, Some(false));
+    assert_eq!(machine.state.state(), Running, "a drop-out so far");
+    machine.speed_under(15.0, 1480.0, Some(false));
     assert_eq!(machine.state.state(), Coasting);
-    machine.speed_under(7.0, 100.0, Some(false));
-    machine.speed_under(8.0, 90.0, Some(false));
+    machine.speed_under(16.0, 100.0, Some(false));
+    machine.speed_under(17.0, 90.0, Some(false));
     assert_eq!(machine.state.state(), Stopped);
-    machine.speed_under(9.0, 1400.0, Some(false));
-    machine.speed_under(9.5, 1400.0, Some(false));
+    machine.speed_under(18.0, 600.0, Some(false));
+    machine.speed_under(18.5, 600.0, Some(false));
     assert_eq!(machine.state.state(), Stopped, "turned by the flow");
-    assert!(machine.state.by_signal(&spec, at(10.0), true));
-    for s in 11..45 {
+    machine.speed_under(19.0, 1480.0, Some(false));
+    machine.speed_under(19.5, 1480.0, Some(false));
+    assert_eq!(machine.state.state(), Coasting, "it does not stand");
+    machine.speed_under(19.6, 0.0, Some(false));
+    machine.speed_under(19.7, 0.0, Some(false));
+    assert!(machine.state.by_signal(&spec, at(20.0), true));
+    for s in 21..55 {
         machine.speed_under(f64::from(s), 0.0, Some(true));
     }
     assert_eq!(machine.state.state(), Running, "30 s after the signal rose");
