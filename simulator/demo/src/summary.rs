@@ -14,7 +14,14 @@ pub fn lines(given: &[Given], story: &Story, start_ns: i64) -> Vec<String> {
     lines.extend(table(2, &injected(given, start_ns)));
     lines.push(String::new());
     lines.push("What was said, and how long after the onset:".to_owned());
-    lines.extend(table(2, &said(given, story, start_ns)));
+    let said = said(given, story, start_ns);
+    lines.extend(table(2, &said));
+    let marked = |row: &Vec<String>| row.last().is_some_and(|cell| cell.ends_with('*'));
+    if said.iter().any(marked) {
+        lines.push(
+            "  * heard at another point than its cause: the machine carries it there".to_owned(),
+        );
+    }
     lines.push(String::new());
     lines.push("What was not said:".to_owned());
     lines.extend(table(2, &unsaid(given, story)));
@@ -73,7 +80,12 @@ fn said(given: &[Given], story: &Story, start_ns: i64) -> Vec<Vec<String>> {
                 || "nothing injected".to_owned(),
                 |cause| {
                     let after_ns = event.header.at.0 - start_ns - (cause.onset_s * 1e9) as i64;
-                    format!("+{}", span(after_ns / 1_000_000_000))
+                    let mark = if cause.heard_elsewhere(event) {
+                        " *"
+                    } else {
+                        ""
+                    };
+                    format!("+{}{mark}", span(after_ns / 1_000_000_000))
                 },
             );
             vec![

@@ -31,8 +31,22 @@ pub struct Injected {
     pub onset_s: f64,
     /// What it is.
     pub cause: Cause,
+    /// The point it sits at; `None` when the whole machine has it.
+    pub point: Option<String>,
     /// The same for people.
     pub words: String,
+}
+
+impl Injected {
+    /// Whether an event tells it from another point than its own: the machine carries it there.
+    #[must_use]
+    pub fn heard_elsewhere(&self, event: &Event) -> bool {
+        let told = event.finding.point.as_ref().map(|id| id.as_str());
+        self.point
+            .as_deref()
+            .zip(told)
+            .is_some_and(|(own, told)| own != told)
+    }
 }
 
 /// What an asset was given to tell.
@@ -77,6 +91,7 @@ pub fn given(scenario: &Scenario) -> Vec<Given> {
                 injected.extend(point.sensor_faults.iter().map(|fault| Injected {
                     onset_s: fault.window().at_s(),
                     cause: Cause::Sensor(point.id.clone()),
+                    point: Some(point.id.clone()),
                     words: format!("sensor {}: {}", point.id, fault.name()),
                 }));
             }
@@ -115,6 +130,7 @@ fn of_machine(fault: &Fault) -> Injected {
     Injected {
         onset_s: growth.onset.0,
         cause,
+        point: kind.point().map(str::to_owned),
         words: format!("{}{place}{growing}", fault.word()),
     }
 }

@@ -83,6 +83,26 @@ fn the_story_as_meant_has_no_difference() {
 }
 
 #[test]
+fn an_alarm_at_another_point_than_its_pit_is_marked_as_heard_there() {
+    let plant = plant();
+    let near = alert();
+    let mut far = alert();
+    far.finding.point = Some(humward_wire::id::Id::new("far-end").expect("an id"));
+    let elsewhere = |event: &Event| {
+        let told = plant.iter().find_map(|asset| {
+            let own = event
+                .header
+                .asset
+                .as_ref()
+                .is_some_and(|id| id.as_str() == asset.asset);
+            asset.explains(event, START_NS).filter(|_| own)
+        });
+        told.expect("a cause").heard_elsewhere(event)
+    };
+    assert_eq!((elsewhere(&near), elsewhere(&far)), (false, true));
+}
+
+#[test]
 fn a_word_of_an_asset_that_is_well_is_a_difference() {
     let stray = (Transition::Raised, Severity::Alert);
     let stray = event("P-101", 1, 900, stray, "velocity.drive-end", "velocity_rms");
