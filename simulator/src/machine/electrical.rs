@@ -4,7 +4,7 @@
 //! rectifier: the armature current has 6 x supply and its multiples; voltage of harmonic n = 6k at firing angle a
 //! is 2 sqrt(cos² a + n² sin² a) / (n² - 1) of the mean at a = 0 (Fourier series of the ideal bridge with continuous
 //! current), current that over n as the armature is inductive, and force goes with current. With the shaft's
-//! sidebands at 4 %. All of it stops when the machine does. Checked by `tests/physics.rs` against an
+//! sidebands at 4 %. All of it stops when the power does, while the shaft still runs down. Checked by `tests/physics.rs` against an
 //! independently simulated bridge (0.295 per unit of phase peak for n = 6 at 30 degrees).
 
 use core::f64::consts::{SQRT_2, TAU};
@@ -13,7 +13,7 @@ use std::sync::Arc;
 use super::Path;
 use crate::random::Draw;
 use crate::scenario::{Asset, Motor, MotorKind};
-use crate::wave::{Law, Line, Lines, LoadLaw, Pitch, Sway, Wave};
+use crate::wave::{Gate, Law, Line, Lines, LoadLaw, Pitch, Sway, Wave};
 
 /// Voltage of harmonic `n` of a six-pulse bridge, relative to the mean at firing angle 0.
 #[must_use]
@@ -90,6 +90,7 @@ pub fn electrical(
             phase: draw.angle(),
             law: Law {
                 load: LoadLaw::Torque,
+                gate: Gate::Powered,
                 ..law
             },
             sway: Sway::drawn(&mut draw),

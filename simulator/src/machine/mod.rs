@@ -10,6 +10,6 @@ mod supply;
 pub use background::{BACKGROUND_LINES, background};
 pub use electrical::{Tone, bridge_ripple, electrical, electrical_tones, tone_hz};
 pub use healthy::healthy;
-pub use motion::Motion;
+pub use motion::{Motion, powered};
 pub use path::Path;
 pub use supply::Supply;

@@ -60,6 +60,7 @@ impl Motion {
                 shaft_hz: 0.0,
                 nominal_hz,
                 load: 1.0,
+                powered: powered(&asset.schedule(), 0.0),
                 line_turns,
                 line_hz,
             },
@@ -116,6 +117,7 @@ impl Motion {
             turns: from.turns + 0.5 * (from.shaft_hz + shaft_hz) * step_s,
             shaft_hz,
             load: self.load(),
+            powered: powered(&self.schedule, at_s),
             line_turns,
             line_hz,
             ..from
@@ -124,5 +126,45 @@ impl Motion {
             from,
             to: self.state,
         }
+    }
+}
+
+/// Whether the motor has power: the schedule goes to anything but standstill; a machine that runs down has
+/// none.
+#[must_use]
+pub fn powered(schedule: &[(f64, f64)], at_s: f64) -> bool {
+    let after = schedule.partition_point(|(at, _)| *at <= at_s);
+    schedule
+        .get(after)
+        .or(schedule.last())
+        .is_some_and(|(_, rpm)| *rpm > 0.0)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::powered;
+
+    #[test]
+    fn a_motor_has_power_while_it_runs_up_and_none_while_it_runs_down() {
+        let schedule = [
+            (0.0, 0.0),
+            (60.0, 0.0),
+            (70.0, 1482.0),
+            (300.0, 1482.0),
+            (312.0, 0.0),
+            (400.0, 0.0),
+        ];
+        for (at_s, power) in [
+            (0.0, false),
+            (59.9, false),
+            (60.0, true),
+            (200.0, true),
+            (300.0, false),
+            (306.0, false),
+            (500.0, false),
+        ] {
+            assert_eq!(powered(&schedule, at_s), power, "{at_s} s");
+        }
+        assert!(powered(&[(0.0, 1482.0)], 1e6));
     }
 }

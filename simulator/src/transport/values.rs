@@ -1,8 +1,7 @@
 //! Speeds and process values of one machine.
 //!
 //! Speed: the true one with a reading error of 0.02 % (common practice, no source), to 0.01 r/min. Run bit: whether
-//! the motor has power, that is, whether the schedule goes to anything but standstill; a machine running down has
-//! none. Flow: rated flow x speed / nominal x load (affinity of flow and speed, from memory), to 0.01 m3/h. Each at
+//! the motor has power ([`powered`]). Flow: rated flow x speed / nominal x load (affinity of flow and speed, from memory), to 0.01 m3/h. Each at
 //! multiples of its interval, the first at the start.
 
 use humward_wire::id::{Id, IdFault};
@@ -10,6 +9,7 @@ use humward_wire::topic::Topics;
 use serde_json::{Value, json};
 
 use super::{Arrivals, Delivery, latency_ns, ns};
+use crate::machine::powered;
 use crate::random::Draw;
 use crate::scenario::{Asset, Process};
 use crate::wave::Tick;
@@ -127,42 +127,4 @@ impl Values {
 
 fn hundredths(value: f64) -> f64 {
     (value * 100.0).round() / 100.0
-}
-
-/// Whether the motor has power: the schedule goes to anything but standstill.
-fn powered(schedule: &[(f64, f64)], at_s: f64) -> bool {
-    let after = schedule.partition_point(|(at, _)| *at <= at_s);
-    schedule
-        .get(after)
-        .or(schedule.last())
-        .is_some_and(|(_, rpm)| *rpm > 0.0)
-}
-
-#[cfg(test)]
-mod tests {
-    use super::powered;
-
-    #[test]
-    fn a_motor_has_power_while_it_runs_up_and_none_while_it_runs_down() {
-        let schedule = [
-            (0.0, 0.0),
-            (60.0, 0.0),
-            (70.0, 1482.0),
-            (300.0, 1482.0),
-            (312.0, 0.0),
-            (400.0, 0.0),
-        ];
-        for (at_s, power) in [
-            (0.0, false),
-            (59.9, false),
-            (60.0, true),
-            (200.0, true),
-            (300.0, false),
-            (306.0, false),
-            (500.0, false),
-        ] {
-            assert_eq!(powered(&schedule, at_s), power, "{at_s} s");
-        }
-        assert!(powered(&[(0.0, 1482.0)], 1e6));
-    }
 }

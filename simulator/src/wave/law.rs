@@ -103,6 +103,8 @@ pub enum Gate {
     Always,
     /// While the shaft turns.
     Turning,
+    /// While the shaft turns and the motor has power.
+    Powered,
 }
 
 /// The strength of a wave relative to what it is at nominal speed, rated load and full growth 1.
@@ -158,7 +160,12 @@ impl Law {
     /// The factor in `state`.
     #[must_use]
     pub fn factor(&self, state: &State) -> f64 {
-        if self.gate == Gate::Turning && state.shaft_hz <= 0.0 {
+        let open = match self.gate {
+            Gate::Always => true,
+            Gate::Turning => state.shaft_hz > 0.0,
+            Gate::Powered => state.shaft_hz > 0.0 && state.powered,
+        };
+        if !open {
             return 0.0;
         }
         let speed = match self.speed_power {

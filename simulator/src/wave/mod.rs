@@ -38,6 +38,8 @@ pub struct State {
     pub nominal_hz: f64,
     /// Load as a share of the rated one.
     pub load: f64,
+    /// Whether the motor has power; a machine that runs down has none.
+    pub powered: bool,
     /// Cycles of the supply since the start.
     pub line_turns: f64,
     /// Frequency of the supply, Hz.
@@ -61,7 +63,7 @@ pub const TICK_S: f64 = 0.01;
 
 impl Tick {
     /// The machine at `at_s` within the tick, or a sample's length beyond it: speed and load linear, turns their
-    /// integral.
+    /// integral, power only where both ends have it.
     #[must_use]
     pub fn at(&self, at_s: f64) -> State {
         let (a, b) = (&self.from, &self.to);
@@ -77,6 +79,7 @@ impl Tick {
             shaft_hz: mix(a.shaft_hz, b.shaft_hz),
             nominal_hz: a.nominal_hz,
             load: mix(a.load, b.load),
+            powered: a.powered && b.powered,
             line_turns: integral(a.line_turns, a.line_hz, b.line_hz),
             line_hz: mix(a.line_hz, b.line_hz),
         }

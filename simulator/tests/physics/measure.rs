@@ -10,7 +10,7 @@ use humward_sim::scenario::{Asset, Scenario, parse};
 use humward_sim::wave::{State, Stretch, TICK_S, Tick, Wave};
 use num_complex::Complex64;
 
-/// A shaft whose speed goes from `from_hz` by `rise` Hz/s, at 1x nominal `nominal_hz`, rated load, 50 Hz supply.
+/// A shaft whose speed goes from `from_hz` by `rise` Hz/s, at 1x nominal `nominal_hz`, rated load, with power from a 50 Hz supply.
 pub(crate) fn state(at_s: f64, from_hz: f64, rise: f64, nominal_hz: f64) -> State {
     State {
         at_s,
@@ -18,6 +18,7 @@ pub(crate) fn state(at_s: f64, from_hz: f64, rise: f64, nominal_hz: f64) -> Stat
         shaft_hz: from_hz + rise * at_s,
         nominal_hz,
         load: 1.0,
+        powered: true,
         line_turns: 50.0 * at_s,
         line_hz: 50.0,
     }
