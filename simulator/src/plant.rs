@@ -67,7 +67,12 @@ pub fn heard(scenario: &Scenario, index: usize, point: &Point) -> Vec<Heard> {
     let path = Path::drawn(here.part("path"), rate_hz).times(point.share);
     let mut all = vec![Heard {
         machine: index,
-        wave: Box::new(background(&here)),
+        wave: Box::new(background(
+            &here,
+            own.nominal_rpm() / 60.0,
+            scenario.line_hz,
+            rate_hz,
+        )),
     }];
     for (machine, asset) in scenario.assets.iter().enumerate() {
         let neighbour = machine != index;

@@ -10,6 +10,9 @@ use num_complex::Complex64;
 use crate::random::Draw;
 use crate::wave::Mode;
 
+/// Above this share of the sampling rate a sensor's anti-alias filter lets nothing through (common practice, no source).
+const HIGHEST: f64 = 0.45;
+
 /// A drawn path.
 #[derive(Clone, Debug, PartialEq)]
 pub struct Path {
@@ -51,7 +54,7 @@ impl Path {
         ];
         Path {
             gain: draw.gain_db(1.5),
-            highest_hz: 0.45 * rate_hz,
+            highest_hz: HIGHEST * rate_hz,
             modes,
             ringing,
         }
@@ -76,6 +79,15 @@ impl Path {
     #[must_use]
     pub fn plain() -> Path {
         Path::with_modes(1.0, Vec::new())
+    }
+
+    /// A path that changes nothing but what the anti-alias filter of a sensor at `rate_hz` stops.
+    #[must_use]
+    pub fn limited(rate_hz: f64) -> Path {
+        Path {
+            highest_hz: HIGHEST * rate_hz,
+            ..Path::plain()
+        }
     }
 
     /// The same path weaker or stronger by `factor`.

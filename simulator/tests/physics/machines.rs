@@ -106,8 +106,8 @@ fn two_seeds_differ_in_the_level_of_every_background_line() {
     const { assert!(BACKGROUND_LINES >= 20) };
     let lines = |seed: u64| {
         let mut all = Vec::new();
-        background(&Draw::new(seed).part("P-1").part("drive-end"))
-            .lines(&state(1.0, 24.7, 0.0, 24.7), &mut all);
+        let draw = Draw::new(seed).part("P-1").part("drive-end");
+        background(&draw, 24.7, 50.0, 12_800.0).lines(&state(1.0, 24.7, 0.0, 24.7), &mut all);
         all
     };
     let first = lines(1);
