@@ -9,4 +9,6 @@ mod physics {
     mod machines;
     mod measure;
     mod noises;
+    mod power;
+    mod ranges;
 }

@@ -51,7 +51,7 @@ pub fn healthy(asset: &Asset, point: &Point, path: &Arc<Path>, draw: &Draw) -> V
     let flow = Cascade::new(
         vec![
             Biquad::high_pass(draw.log_between(12.0, 20.0), rate_hz),
-            Biquad::low_pass(draw.log_between(150.0, 350.0), rate_hz),
+            Biquad::low_pass(draw.log_between(150.0, 350.0).min(0.3 * rate_hz), rate_hz),
         ],
         rate_hz,
     );

@@ -130,12 +130,13 @@ impl Cascade {
             .product()
     }
 
-    /// Mean square at the output for white noise of variance 1, weighted by `weight(hz)`, over `low_hz..high_hz`:
+    /// Mean square at the output for white noise of variance 1, weighted by `weight(hz)`, over `low_hz..high_hz`,
+    /// no further than half the rate:
     /// the integral of 2/rate |H|² weight, Simpson's rule on a logarithmic grid of 2000 steps.
     #[must_use]
     pub fn noise_power(&self, low_hz: f64, high_hz: f64, weight: impl Fn(f64) -> f64) -> f64 {
         let steps = 2000;
-        let ratio = (high_hz / low_hz).ln() / f64::from(steps);
+        let ratio = (high_hz.min(0.5 * self.rate_hz) / low_hz).ln() / f64::from(steps);
         let density = |k: i32| {
             let hz = low_hz * (ratio * f64::from(k)).exp();
             2.0 / self.rate_hz * self.power(hz) * weight(hz) * hz
