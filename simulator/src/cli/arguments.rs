@@ -4,7 +4,7 @@ use std::path::PathBuf;
 
 use clap::{Args, Parser, Subcommand};
 
-use crate::scenario::{Scenario, Seconds};
+use crate::scenario::{LONGEST_S, Scenario, Seconds};
 
 /// Makes what accelerometers on pumps would send, with the truth beside it.
 /// Everything made here is simulated and says so.
@@ -128,10 +128,10 @@ fn time(text: &str) -> Result<i64, String> {
 
 fn length(text: &str) -> Result<Seconds, String> {
     let length = Seconds::parse(text)?;
-    if (1.0..=32e6).contains(&length.0) {
+    if (1.0..=LONGEST_S).contains(&length.0) {
         Ok(length)
     } else {
-        Err(format!("{} s; allowed: 1 to 32000000 s", length.0))
+        Err(format!("{} s; allowed: 1 to {LONGEST_S} s", length.0))
     }
 }
 

@@ -16,7 +16,7 @@ pub use asset::{Asset, LoadWalk, Motor, MotorKind, Process, SwayOf};
 pub use catalogue::{Entry, catalogue, find};
 pub use fault::ScenarioFault;
 use load::is_id;
-pub(crate) use load::within;
+pub(crate) use load::{LONGEST_S, within};
 pub use load::{load, parse};
 pub use point::{Bearing, Encoding, Point, SampleUnit};
 pub use seconds::Seconds;

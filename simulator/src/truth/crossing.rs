@@ -24,14 +24,16 @@ pub struct Crossing {
     pub mm_s: f64,
     /// Which way.
     pub direction: Direction,
-    /// s after the start, to 1 s.
+    /// s after the start, to 1 s or a 20 000th of the duration, whichever is longer.
     pub after_s: f64,
     /// The same, RFC 3339.
     pub at: String,
 }
 
-/// The clean velocity is computed this often.
-const EVERY_TICKS: u64 = (1.0 / TICK_S) as u64;
+/// The clean velocity is computed at most so many times,
+const EVALUATIONS: f64 = 20_000.0;
+/// and at most this often.
+const TICKS_PER_S: u64 = (1.0 / TICK_S) as u64;
 /// A level counts as left only this share beyond it, so that a load that wanders crosses once.
 const HYSTERESIS: f64 = 0.03;
 
@@ -46,7 +48,12 @@ fn now(waves: &[Heard], states: &[State]) -> f64 {
     )
 }
 
-/// Goes through the scenario second by second; one entry per point, in the order of the scenario.
+/// How many ticks lie between two evaluations: whole seconds.
+fn every_ticks(duration_s: f64) -> u64 {
+    TICKS_PER_S * ((duration_s / EVALUATIONS).ceil() as u64).max(1)
+}
+
+/// Goes through the scenario, second by second if it is short; one entry per point, in the order of the scenario.
 pub(super) fn follow(scenario: &Scenario, start_ns: i64) -> Vec<Followed> {
     let mut plant = Plant::new(scenario);
     let points: Vec<Vec<Heard>> = scenario
@@ -75,9 +82,10 @@ pub(super) fn follow(scenario: &Scenario, start_ns: i64) -> Vec<Followed> {
         })
         .collect();
     let ticks = (scenario.duration.0 / TICK_S) as u64;
+    let every = every_ticks(scenario.duration.0);
     for tick in 1..=ticks {
         plant.advance();
-        if tick % EVERY_TICKS != 0 {
+        if tick % every != 0 && tick != ticks {
             continue;
         }
         let states = plant.states();
@@ -109,4 +117,21 @@ pub(super) fn follow(scenario: &Scenario, start_ns: i64) -> Vec<Followed> {
         }
     }
     followed
+}
+
+#[cfg(test)]
+mod tests {
+    use super::{EVALUATIONS, TICKS_PER_S, every_ticks};
+
+    #[test]
+    fn a_week_is_evaluated_no_more_often_than_five_hours_are() {
+        for duration_s in [1.0, 3600.0, 20_000.0, 20_001.0, 604_800.0] {
+            let every = every_ticks(duration_s);
+            let evaluations = duration_s * TICKS_PER_S as f64 / every as f64;
+            assert!(evaluations <= EVALUATIONS, "{duration_s} s: {evaluations}");
+            assert_eq!(every % TICKS_PER_S, 0, "{duration_s} s: whole seconds");
+        }
+        assert_eq!(every_ticks(20_000.0), TICKS_PER_S);
+        assert_eq!(every_ticks(604_800.0), 31 * TICKS_PER_S);
+    }
 }

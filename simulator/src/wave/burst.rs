@@ -41,6 +41,11 @@ impl Mode {
     }
 }
 
+/// So many harmonics of evenly spaced strikes are summed one by one.
+const HARMONICS: f64 = 2000.0;
+/// Slower strikes have no mean power to speak of, Hz.
+const SLOWEST_HZ: f64 = 0.1;
+
 /// Strikes and the modes they ring.
 #[derive(Clone, Debug)]
 pub struct BurstTrain {
@@ -104,18 +109,19 @@ impl Wave for BurstTrain {
     fn lines(&self, _: &State, _: &mut Vec<Phasor>) {}
 
     /// Evenly spaced strikes: lines at multiples of the rate, power from the mean square of the strength, which puts
-    /// the sidebands of a load zone at their carrier. Strikes by chance: density 2 x rate x mean square |H|².
+    /// the sidebands of a load zone at their carrier. Strikes by chance, and lines so dense that more than
+    /// [`HARMONICS`] lie in the band: density 2 x rate x mean square |H|². Less than one strike in 10 s counts as none.
     fn random_velocity_power(&self, state: &State) -> f64 {
         let factor = self.strikes.law().factor(state);
         let (rate, even) = self.strikes.rate(state);
-        if factor == 0.0 || rate <= 0.0 {
+        if factor == 0.0 || rate < SLOWEST_HZ {
             return 0.0;
         }
         let (_, square) = self.strikes.moments();
         let square = square * factor * factor;
         let (low, high) = VELOCITY_BAND_HZ;
         let velocity = |hz: f64| self.transform(hz).norm_sqr() / (TAU * hz).powi(2);
-        if even {
+        if even && high / rate <= HARMONICS {
             let (first, last) = ((low / rate).ceil() as u32, (high / rate).floor() as u32);
             (first.max(1)..=last)
                 .map(|k| 2.0 * square * rate * rate * velocity(rate * f64::from(k)))

@@ -318,3 +318,35 @@ fn clean_velocity_of_a_burst_train_is_that_of_its_lines_within_2_per_cent() {
         power.sqrt()
     );
 }
+
+/// Independent route: all harmonics one by one, up to 1 kHz. More than 2000 of them are summed as a density.
+#[test]
+fn velocity_of_slow_strikes_is_the_sum_of_all_their_harmonics_within_1_percent() {
+    let mode = Mode {
+        hz: 700.0,
+        damping: 0.03,
+        gain: 1.0,
+    };
+    let power = |hz: f64| {
+        let timing = Timing::Turns {
+            order: 1.0,
+            slip: 0.0,
+        };
+        let strikes = Strikes::new(timing, ALIKE, Law::steady(0.0), Draw::new(1));
+        BurstTrain::new(strikes, vec![mode]).random_velocity_power(&state(0.0, hz, 0.0, hz))
+    };
+    for hz in [0.15_f64, 0.49, 0.51, 5.0] {
+        let omega = TAU * mode.hz;
+        let damped = omega * (1.0 - mode.damping * mode.damping).sqrt();
+        let sum: f64 = ((10.0 / hz).ceil() as u32..=(1000.0 / hz).floor() as u32)
+            .map(|k| TAU * hz * f64::from(k))
+            .map(|w| {
+                let (re, im) = (omega * omega - w * w, 2.0 * mode.damping * omega * w);
+                2.0 * hz * hz * damped * damped / (re * re + im * im) / (w * w)
+            })
+            .sum();
+        let got = power(hz);
+        assert!((got / sum - 1.0).abs() < 0.01, "{hz} Hz: {got} {sum}");
+    }
+    assert_eq!((power(0.05), power(1e-9)), (0.0, 0.0));
+}
