@@ -30,7 +30,7 @@ fn place(line: &Expected) -> String {
     };
     match (line.level, line.seen) {
         (None, _) => place.to_owned(),
-        (Some(level), Seen::Velocity) => format!("{place:<12} {level:5.2} mm/s"),
+        (Some(level), Seen::Velocity) => format!("{place} {level:5.2} mm/s rms"),
         (Some(level), Seen::Envelope | Seen::Acceleration) => {
             format!("{place:<12} {level:5.2} m/s2")
         }
@@ -137,7 +137,7 @@ fn tell_fault(text: &mut String, fault: &FaultTruth) {
     }
     let _ = writeln!(
         text,
-        "    lines to expect at nominal speed and full growth, rms, before the path:"
+        "    lines to expect at nominal speed and full growth, before the path:"
     );
     for line in &fault.lines {
         let _ = writeln!(

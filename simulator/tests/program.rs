@@ -12,13 +12,24 @@ use std::sync::atomic::{AtomicU32, Ordering};
 
 use humward_wire::recording::{Header, Record, open};
 
-/// A fresh folder of this test run.
-fn folder() -> PathBuf {
+/// A folder of this test run, gone with its guard.
+struct Folder(PathBuf);
+
+impl Drop for Folder {
+    fn drop(&mut self) {
+        let removed = fs::remove_dir_all(&self.0);
+        // A test that fails already says so itself.
+        assert!(removed.is_ok() || std::thread::panicking(), "{removed:?}");
+    }
+}
+
+/// A fresh folder.
+fn folder() -> Folder {
     static COUNT: AtomicU32 = AtomicU32::new(0);
     let count = COUNT.fetch_add(1, Ordering::Relaxed);
     let path = std::env::temp_dir().join(format!("humward-sim-{}-{count}", std::process::id()));
     fs::create_dir_all(&path).unwrap();
-    path
+    Folder(path)
 }
 
 fn run(arguments: &[&str]) -> Output {
@@ -40,7 +51,8 @@ fn told(output: &Output) -> (i32, String, String) {
 
 /// What the program says of a scenario with this text.
 fn explain(text: &str) -> (i32, String, String) {
-    let path = folder().join("mine.toml");
+    let folder = folder();
+    let path = folder.0.join("mine.toml");
     fs::write(&path, text).unwrap();
     told(&run(&["explain", path.to_str().unwrap()]))
 }
@@ -67,7 +79,7 @@ at = "2s"
 /// Renders [`SMALL`] and gives the bytes.
 fn rendered(more: &[&str]) -> Vec<u8> {
     let folder = folder();
-    let (scenario, out) = (folder.join("small.toml"), folder.join("small.rec"));
+    let (scenario, out) = (folder.0.join("small.toml"), folder.0.join("small.rec"));
     fs::write(&scenario, SMALL).unwrap();
     let mut arguments = vec![
         "render",
@@ -81,7 +93,7 @@ fn rendered(more: &[&str]) -> Vec<u8> {
     let bytes = fs::read(&out).unwrap();
     assert!(said.contains(&format!("{} bytes", bytes.len())), "{said}");
     assert_eq!(
-        fs::read_dir(&folder).unwrap().count(),
+        fs::read_dir(&folder.0).unwrap().count(),
         2,
         "nothing is left beside"
     );
@@ -165,7 +177,8 @@ fn the_same_seed_renders_the_same_bytes_and_another_does_not() {
 
 #[test]
 fn a_file_that_is_there_stays_unless_it_is_to_be_replaced() {
-    let out = folder().join("kept.rec");
+    let folder = folder();
+    let out = folder.0.join("kept.rec");
     fs::write(&out, "dear").unwrap();
     let render = |more: &[&str]| {
         let mut arguments = vec![
@@ -285,6 +298,70 @@ fn numbers_that_are_none_are_refused_wherever_toml_lets_them_stand() {
         assert_eq!(code, 1, "{to}");
         assert!(fault.contains(told), "{told:?} is not in {fault}");
     }
+}
+
+#[test]
+fn a_number_without_a_unit_is_told_how_a_length_of_time_is_written() {
+    for number in ["4", "-4", "1.5"] {
+        let (code, _, fault) = explain(&SMALL.replace("\"5s\"", number));
+        assert_eq!(code, 1, "{number}");
+        let told = format!("{number} is not a length of time: a number needs a unit and quotes");
+        assert!(
+            fault.contains(&told) && fault.contains("\"90s\""),
+            "{fault}"
+        );
+        assert!(fault.contains("line 4"), "{fault}");
+    }
+}
+
+#[test]
+fn a_bearing_of_two_negative_diameters_is_refused() {
+    let bearing =
+        "rate_hz = 1000\nbearing = { balls = 9, ball_diameter_mm = -8, pitch_diameter_mm = -39 }";
+    let (code, _, fault) = explain(&SMALL.replace("rate_hz = 1000", bearing));
+    assert_eq!(code, 1);
+    for told in [
+        "bearing.ball_diameter_mm is -8; allowed: 0.1 to 1000 mm",
+        "bearing.pitch_diameter_mm is -39; allowed: 0.2 to 10000 mm",
+    ] {
+        assert!(fault.contains(told), "{told:?} is not in {fault}");
+    }
+}
+
+#[test]
+fn a_scenario_longer_than_a_week_is_refused() {
+    let (code, _, fault) = explain(&SMALL.replace("\"5s\"", "\"169h\""));
+    assert_eq!(code, 1);
+    assert!(
+        fault.contains("duration is 608400; allowed: 1 to 604800 s"),
+        "{fault}"
+    );
+}
+
+#[test]
+fn rms_is_said_of_velocity_lines_and_not_of_the_height_of_strikes() {
+    for (scenario, rms, without) in [
+        ("imbalance-growing", "mm/s rms", "m/s2 rms"),
+        ("outer-race-growing", "strike height", "rms"),
+    ] {
+        let (_, text, _) = told(&run(&["explain", scenario]));
+        let lines: Vec<&str> = text
+            .lines()
+            .skip_while(|line| !line.contains("lines to expect"))
+            .take_while(|line| !line.contains("  point "))
+            .collect();
+        assert!(lines.iter().any(|line| line.contains(rms)), "{text}");
+        assert!(!lines.iter().any(|line| line.contains(without)), "{text}");
+    }
+}
+
+#[test]
+fn a_folder_of_these_tests_is_gone_with_its_guard() {
+    let folder = folder();
+    let path = folder.0.join("mine.toml");
+    fs::write(&path, SMALL).unwrap();
+    drop(folder);
+    assert!(!path.exists() && !path.parent().unwrap().exists());
 }
 
 #[test]

@@ -212,7 +212,10 @@ impl Point {
         }
         if let Some(bearing) = self.bearing {
             number("bearing.balls", f64::from(bearing.balls), 3.0, 60.0, "");
-            let ratio = bearing.ball_diameter_mm / bearing.pitch_diameter_mm;
+            let (ball, pitch) = (bearing.ball_diameter_mm, bearing.pitch_diameter_mm);
+            number("bearing.ball_diameter_mm", ball, 0.1, 1000.0, "mm");
+            number("bearing.pitch_diameter_mm", pitch, 0.2, 10_000.0, "mm");
+            let ratio = ball / pitch;
             number("ball over pitch diameter", ratio, 0.01, 0.6, "");
             number("bearing.angle_deg", bearing.angle_deg, 0.0, 60.0, "degrees");
         }
