@@ -5,6 +5,7 @@ mod access;
 mod broker_lost;
 mod faster;
 mod lifecycle;
+mod readme;
 mod real_recordings;
 mod refusals;
 mod simulated;
