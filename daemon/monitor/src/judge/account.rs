@@ -257,7 +257,7 @@ pub(super) fn text(account: &Account<'_>, story: &Story) -> String {
     let what = format!(
         "{place}: {}{}.",
         subject(account, story),
-        course(account, story)
+        history(account, story)
     );
     let speed = match (reading.speed, account.armed) {
         (ShaftSpeed::Reported(rpm), Some(_)) => format!("At {rpm:.0} r/min on average"),
@@ -367,7 +367,7 @@ fn limit(account: &Account<'_>, before: &str, after: &str) -> String {
 }
 
 /// How it came to be: since when, from what, until when.
-fn course(account: &Account<'_>, story: &Story) -> String {
+fn history(account: &Account<'_>, story: &Story) -> String {
     let now = Instant(account.reading.end.ns());
     let said = |instant: Option<Instant>| {
         instant.map_or_else(|| "an unknown time".into(), |instant| clock(instant, now))

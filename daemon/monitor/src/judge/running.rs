@@ -5,7 +5,7 @@
 //! range it runs in; either ends when the speed has held still as long as a reading lasts. The level alone tells
 //! neither: a ramp is not seen in it.
 
-use super::trend::{Course, Report, Trend, WINDOW};
+use super::trend::{Direction, Report, Trend, WINDOW};
 use crate::{
     plan::{AssetSpec, RunningRule},
     time::{Arrival, SignalTime, Span},
@@ -261,7 +261,7 @@ impl RunningState {
         };
         let from = from.unwrap_or(SignalTime::from_ns(i64::MIN));
         let held = self.trend.held(from, now, spec.reading_every.max(least));
-        match (self.state, held, self.trend.course()) {
+        match (self.state, held, self.trend.direction()) {
             (Operating::Unknown, ..) if below_range => self.turn(Operating::Starting, now),
             (Operating::Unknown, ..) => self.turn(Operating::Running, now),
             (Operating::Stopped, ..) => self.turn(Operating::Starting, now),
@@ -270,12 +270,12 @@ impl RunningState {
             }
             // What has held still for that long neither rises nor falls, whatever came before it.
             (Operating::Running, Some(_), _) => false,
-            (Operating::Running, None, Course::Steady) if below_range => {
+            (Operating::Running, None, Direction::Steady) if below_range => {
                 self.turn(Operating::Coasting, now)
             }
-            (_, _, Course::Rising) => self.turn(Operating::Starting, now),
-            (_, _, Course::Falling) => self.turn(Operating::Coasting, now),
-            (_, _, Course::Steady) => false,
+            (_, _, Direction::Rising) => self.turn(Operating::Starting, now),
+            (_, _, Direction::Falling) => self.turn(Operating::Coasting, now),
+            (_, _, Direction::Steady) => false,
         }
     }
 

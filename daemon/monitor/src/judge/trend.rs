@@ -1,7 +1,7 @@
 //! Which reported speeds are believed, and whether they rise, fall or hold still.
 //!
 //! In: reports newer than all before, r/min in signal time, from several a second to one each 10 s. Out: those
-//! believed, and their course. One bad report is never believed: one that departs by more than 3 % counts when the
+//! believed, and their direction. One bad report is never believed: one that departs by more than 3 % counts when the
 //! next departs to the same side, or when it has stood alone for 15 s; of two that depart the nearer counts, which
 //! makes what is believed the median of three. Two bad reports in a row are believed. Where the numbers come from:
 //! common practice, no source. Checked by the tests in `trend/tests.rs`.
@@ -21,7 +21,7 @@ pub(super) const WINDOW: Span = Span::from_secs(10);
 const MOVES: f64 = 0.08;
 /// Share of the highest speed within which it holds still: a wander of 2 % to both sides and half of that in noise.
 const STILL: f64 = 0.06;
-/// Reports closer together than this are one towards the course: what is kept stays bounded.
+/// Reports closer together than this are one towards the direction: what is kept stays bounded.
 const THINNED: Span = Span::from_ns(SECOND / 4);
 
 /// One reported speed.
@@ -35,7 +35,7 @@ pub(super) struct Report {
 
 /// Where the believed speed goes.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub(super) enum Course {
+pub(super) enum Direction {
     /// Up by more than 8 % of itself in 10 s.
     Rising,
     /// Down by more than 8 % of what it was in 10 s.
@@ -182,19 +182,19 @@ impl Trend {
     }
 
     /// Where the speed goes: its change over the last window, or since the report before when that is longer ago.
-    pub(super) fn course(&self) -> Course {
+    pub(super) fn direction(&self) -> Direction {
         let (Some(first), Some(last)) = (self.recent.first(), self.believed) else {
-            return Course::Steady;
+            return Direction::Steady;
         };
         let windows = last.at.since(first.at).max(WINDOW).secs() / WINDOW.secs();
         let moved = (last.rpm - first.rpm) / windows;
         let enough = MOVES * last.rpm.max(first.rpm);
         if moved > enough {
-            Course::Rising
+            Direction::Rising
         } else if -moved > enough {
-            Course::Falling
+            Direction::Falling
         } else {
-            Course::Steady
+            Direction::Steady
         }
     }
 

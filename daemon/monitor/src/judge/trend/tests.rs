@@ -2,7 +2,7 @@
 
 use alloc::vec::Vec;
 
-use super::{Course, Report, Trend};
+use super::{Direction, Report, Trend};
 use crate::time::{Arrival, SECOND, SignalTime, Span};
 
 const VALID: Span = Span::from_secs(120);
@@ -95,22 +95,26 @@ fn a_report_alone_is_believed_after_15_s_of_either_time() {
 fn it_rises_or_falls_beyond_8_percent_in_10_s_whatever_the_reports_are_apart() {
     for every in [0.02, 0.3, 1.0, 5.0, 10.0] {
         // 8 % of the higher in 10 s is 0.834 % of itself in a second.
-        for (share, course) in [
-            (0.0086, Course::Rising),
-            (0.0081, Course::Steady),
-            (-0.0081, Course::Steady),
-            (-0.0086, Course::Falling),
+        for (share, direction) in [
+            (0.0086, Direction::Rising),
+            (0.0081, Direction::Steady),
+            (-0.0081, Direction::Steady),
+            (-0.0086, Direction::Falling),
         ] {
             let (trend, _) = after(&ramp(share, every));
-            assert_eq!(trend.course(), course, "{share} each {every} s");
+            assert_eq!(trend.direction(), direction, "{share} each {every} s");
         }
     }
-    let step = |rpm| after(&[(0.0, 1000.0), (1.0, rpm), (2.0, rpm)]).0.course();
+    let step = |rpm| {
+        after(&[(0.0, 1000.0), (1.0, rpm), (2.0, rpm)])
+            .0
+            .direction()
+    };
     // 8 % of the higher speed.
-    assert_eq!(step(1086.0), Course::Steady);
-    assert_eq!(step(1088.0), Course::Rising);
-    assert_eq!(step(921.0), Course::Steady);
-    assert_eq!(step(919.0), Course::Falling);
+    assert_eq!(step(1086.0), Direction::Steady);
+    assert_eq!(step(1088.0), Direction::Rising);
+    assert_eq!(step(921.0), Direction::Steady);
+    assert_eq!(step(919.0), Direction::Falling);
 }
 
 #[test]
@@ -122,7 +126,11 @@ fn a_wander_of_2_percent_in_a_minute_neither_rises_nor_falls_and_holds_still() {
             let wander = 0.02 * (core::f64::consts::TAU * s / 60.0).sin();
             reports.push((s, 1480.0 * (1.0 + wander)));
             let (trend, _) = after(&reports[reports.len().saturating_sub(700)..]);
-            assert_eq!(trend.course(), Course::Steady, "at {s} s, each {every} s");
+            assert_eq!(
+                trend.direction(),
+                Direction::Steady,
+                "at {s} s, each {every} s"
+            );
         }
         let (trend, _) = after(&reports);
         let long = Span::from_secs(120);
