@@ -1,7 +1,8 @@
 //! Everything drawn, from one seed.
 //!
 //! A [`Draw`] is a generator named by the path of what it draws for (`"P-1/drive-end/path"`). Its sequence depends on
-//! the scenario's seed and that name alone, so adding an asset or a fault changes nothing that was drawn for another.
+//! the scenario's seed and that name alone, so adding an asset, or a fault behind the others, changes nothing that was
+//! drawn for another.
 //! Generator: xoshiro256++, whose sequence is fixed by its definition.
 
 use rand_distr::{Distribution, Exp1, StandardNormal};

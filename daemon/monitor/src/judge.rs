@@ -2,7 +2,7 @@
 //!
 //! What lasts is small: open occurrences, how far each persistence has come, the event number. A machine that
 //! stands still or changes speed is not judged by running limits; what stands open then is suspended, not ended.
-//! While it starts, danger stays armed at a multiple (`armed`).
+//! While it turns and running limits do not hold, danger stays armed at a multiple (`armed`).
 
 mod account;
 mod announce;

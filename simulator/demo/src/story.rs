@@ -115,10 +115,20 @@ impl Story {
         }
     }
 
-    /// Every event of an asset, in the order it was heard.
+    /// Every event of any asset, in the order it was heard.
     #[must_use]
     pub fn events(&self) -> &[Event] {
         &self.events
+    }
+
+    /// The events of one asset, in the order they were heard.
+    #[must_use]
+    pub fn events_of(&self, asset: &str) -> Vec<&Event> {
+        let of_it = |event: &&Event| {
+            let id = event.header.asset.as_ref();
+            id.is_some_and(|id| id.as_str() == asset)
+        };
+        self.events.iter().filter(of_it).collect()
     }
 
     /// How often an asset was heard to come to rest after it had run, and to run again after it had stood.

@@ -115,17 +115,7 @@ fn severity(event: &Event) -> &'static str {
 fn unsaid(given: &[Given], story: &Story) -> Vec<Vec<String>> {
     let mut rows = Vec::new();
     for asset in given {
-        let events: Vec<&Event> = story
-            .events()
-            .iter()
-            .filter(|event| {
-                event
-                    .header
-                    .asset
-                    .as_ref()
-                    .is_some_and(|id| id.as_str() == asset.asset)
-            })
-            .collect();
+        let events = story.events_of(&asset.asset);
         let of_machine = events.iter().any(|event| {
             !event
                 .finding

@@ -174,17 +174,7 @@ pub fn turns_in_words((stops, starts): (usize, usize)) -> String {
 pub fn differences(given: &[Given], story: &Story, start_ns: i64) -> Vec<String> {
     let mut differences = Vec::new();
     for asset in given {
-        let events: Vec<&Event> = story
-            .events()
-            .iter()
-            .filter(|event| {
-                event
-                    .header
-                    .asset
-                    .as_ref()
-                    .is_some_and(|id| id.as_str() == asset.asset)
-            })
-            .collect();
+        let events = story.events_of(&asset.asset);
         for event in &events {
             if asset.explains(event, start_ns).is_none() {
                 differences.push(format!(
